@@ -14,7 +14,20 @@ from fieldapp.records.counting import BayCount, Counted
 from fieldapp.records.job import Job, Thing
 from fieldapp.records.record import Record, Refusal
 
-MONTHS = "January February March April May June July August September October November December".split()
+MONTHS = [
+    "January",
+    "February",
+    "March",
+    "April",
+    "May",
+    "June",
+    "July",
+    "August",
+    "September",
+    "October",
+    "November",
+    "December",
+]
 
 
 @dataclass(frozen=True, slots=True)

@@ -1,0 +1,457 @@
+"""Draws depth charts and strip charts straight on the canvas; fills, hatches and numbers each in few operations."""
+
+from collections import defaultdict
+from typing import Any, Final
+
+from reportlab.platypus import Flowable
+
+from fieldapp.report.drawing.fonts import BOLD, REGULAR
+from fieldapp.report.drawing.style import (
+    ACCENT,
+    FRAMING,
+    INK,
+    PAPER,
+    RULE,
+    SHADES,
+    SOFT,
+    is_dark,
+    shade,
+)
+from fieldapp.report.drawing.text import fitted, lines, typeset, width
+from fieldapp.report.model import Cell, ChartBay, DepthChart, StripChart
+
+NUMBER: Final = 6.6
+LABEL: Final = 6.4
+LEAST_NUMBER: Final = 4.6
+GUTTER: Final = 13.0
+FRAME: Final = 1.4
+TALLEST: Final = 210.0
+WIDEST_BAY: Final = 58.0
+KEY_WIDTH: Final = 150.0
+
+#: x, y of the lower left corner, width, height. [pt]
+Box = tuple[float, float, float, float]
+
+
+def shade_step(level: float) -> int:
+    """Step of the ramp for a share 0..1 of how far a depth is over the specified one."""
+    return min(SHADES - 1, int(level * SHADES))
+
+
+def hatch_gap(level: float) -> float:
+    """Distance of hatch lines: denser the more is missing. [pt]"""
+    return 4.6 - 2.6 * min(1.0, level)
+
+
+def hatch(path: Any, box: Box, gap: float) -> None:
+    """Add rising lines at 45 degrees through a box (x, y, width, height) to a path."""
+    x, y, wide, high = box
+    start = -high + gap / 2
+    while start < wide:
+        from_x, to_x = max(0.0, start), min(wide, start + high)
+        if to_x > from_x:
+            path.moveTo(x + from_x, y + from_x - start)
+            path.lineTo(x + to_x, y + to_x - start)
+        start += gap
+
+
+def cross(path: Any, box: Box) -> None:
+    """Add both diagonals of a box to a path: bare."""
+    x, y, wide, high = box
+    path.moveTo(x, y)
+    path.lineTo(x + wide, y + high)
+    path.moveTo(x, y + high)
+    path.lineTo(x + wide, y)
+
+
+def upright(path: Any, box: Box, gap: float) -> None:
+    """Add upright lines through a box to a path: too deep."""
+    x, y, wide, high = box
+    at = gap / 2
+    while at < wide:
+        path.moveTo(x + at, y)
+        path.lineTo(x + at, y + high)
+        at += gap
+
+
+class _Pen:
+    """Collects what a band draws and puts it down in few operations: frames, shades, hatches, outlines, numbers."""
+
+    def __init__(self, canvas: Any, size: float) -> None:
+        self.canvas = canvas
+        self.size = size
+        self.frames: list[Box] = []
+        self.shades: dict[int, list[Box]] = defaultdict(list)
+        self.outlined: list[Box] = []
+        self.dashed: list[Box] = []
+        self.knocked: list[Box] = []
+        self.dark_numbers: list[tuple[float, float, str]] = []
+        self.light_numbers: list[tuple[float, float, str]] = []
+        self.hatches, self.crosses, self.upright = canvas.beginPath(), canvas.beginPath(), canvas.beginPath()
+
+    def cell(self, cell: Cell, box: Box) -> None:
+        """A point: unread dashed, over shaded, under hatched, bare crossed, blocked outlined with its letter."""
+        text = typeset(cell.text)
+        if cell.state == "unread":
+            self.dashed.append(box)
+            return
+        if cell.state == "over":
+            step = shade_step(cell.level)
+            self.shades[step].append(box)
+            if not cell.too_deep:
+                self._number(text, box, self.light_numbers if is_dark(step) else self.dark_numbers)
+                return
+            upright(self.upright, box, 2.4)
+        elif cell.state == "under":
+            hatch(self.hatches, box, hatch_gap(cell.level))
+        elif cell.state == "bare":
+            cross(self.crosses, box)
+        self.outlined.append(box)
+        if text:
+            self._number(text, box, self.dark_numbers, knock=True)
+
+    def low_spot(self, text: str, is_under: bool, box: Box) -> None:
+        """The thinnest place between the points, below its bay."""
+        self.outlined.append(box)
+        if is_under:
+            hatch(self.hatches, box, 3.0)
+        self._number(typeset(text), box, self.dark_numbers, knock=is_under)
+
+    def _number(self, text: str, box: Box, among: list[tuple[float, float, str]], *, knock: bool = False) -> None:
+        wide = width(text, REGULAR, self.size)
+        x, y = box[0] + (box[2] - wide) / 2, box[1] + box[3] / 2 - self.size * 0.34
+        among.append((x, y, text))
+        if knock:
+            # Paper behind a number that stands on a hatch.
+            self.knocked.append((x - 0.8, y - self.size * 0.22, wide + 1.6, self.size * 1.02))
+
+    def paint(self) -> None:
+        """From the ground up."""
+        canvas = self.canvas
+        canvas.setFillColor(FRAMING)
+        self._boxes(self.frames, fill=1)
+        for step, boxes in self.shades.items():
+            canvas.setFillColor(shade(step))
+            self._boxes(boxes, fill=1)
+        for path, colour, weight in ((self.hatches, INK, 0.45), (self.crosses, INK, 0.45), (self.upright, PAPER, 0.6)):
+            canvas.setStrokeColor(colour)
+            canvas.setLineWidth(weight)
+            canvas.drawPath(path, stroke=1, fill=0)
+        canvas.setStrokeColor(INK)
+        canvas.setLineWidth(0.7)
+        self._boxes(self.outlined, fill=0)
+        canvas.setFillColor(PAPER)
+        self._boxes(self.knocked, fill=1)
+        canvas.setLineWidth(0.5)
+        canvas.setDash(1.6, 1.4)
+        self._boxes(self.dashed, fill=0)
+        canvas.setDash()
+        self._numbers(self.dark_numbers, INK)
+        self._numbers(self.light_numbers, PAPER)
+
+    def _boxes(self, boxes: list[Box], *, fill: int) -> None:
+        if boxes:
+            path = self.canvas.beginPath()
+            for box in boxes:
+                path.rect(*box)
+            self.canvas.drawPath(path, stroke=1 - fill, fill=fill)
+
+    def _numbers(self, numbers: list[tuple[float, float, str]], colour: Any) -> None:
+        if numbers:
+            text = self.canvas.beginText()
+            text.setFont(REGULAR, self.size)
+            text.setFillColor(colour)
+            for x, y, number in numbers:
+                text.setTextOrigin(x, y)
+                text.textOut(number)
+            self.canvas.drawText(text)
+
+
+class DepthChartFlow(Flowable):
+    """A depth chart, in as many bands of bays as the width asks."""
+
+    def __init__(self, chart: DepthChart, *, with_key: bool = True, tallest: float = TALLEST) -> None:
+        super().__init__()
+        self.chart = chart
+        self.with_key = with_key
+        self.tallest = tallest
+
+    def wrap(self, available_width: float, _available_height: float) -> tuple[float, float]:
+        """Size of the chart. [pt]"""
+        self.width = available_width
+        self._lay_out()
+        return available_width, self.height
+
+    def split(self, available_width: float, available_height: float) -> list[Flowable]:
+        """Between bands."""
+        self.wrap(available_width, available_height)
+        fitting = int((available_height - self._key_height()) // self.band_height)
+        if fitting < 1 or fitting >= len(self.bands):
+            return []
+        number = sum(len(band) for band in self.bands[:fitting])
+        first = DepthChart(self.chart.bays[:number], *self._rest())
+        second = DepthChart(self.chart.bays[number:], *self._rest())
+        return [
+            DepthChartFlow(first, with_key=False, tallest=self.tallest),
+            DepthChartFlow(second, with_key=self.with_key, tallest=self.tallest),
+        ]
+
+    def _rest(self) -> tuple[str, str, str, tuple[str, str, str], tuple[str, ...]]:
+        chart = self.chart
+        return chart.start, chart.top, chart.bottom, chart.key, chart.notes
+
+    def _lay_out(self) -> None:
+        bays = self.chart.bays
+        room = self.width - GUTTER
+        texts = {typeset(cell.text) for bay in bays for cell in bay.cells} | {
+            typeset(bay.low_spot or "") for bay in bays
+        }
+        widest = max((width(text, REGULAR, NUMBER) for text in texts), default=0.0) + 2.4
+        narrowest = min(bay.width_mm * min(bay.col_shares) for bay in bays)
+        flattest = min(bay.height_mm * min(bay.row_shares) for bay in bays)
+        tallest_mm = max(bay.height_mm for bay in bays)
+        # One scale for both directions, so that bays stand to proportion; only where that would be too small to read or too
+        # tall to print are heights stretched or squeezed alike for all bays.
+        scale = max(widest / narrowest, 1e-6)
+        widest_bay = max(bay.width_mm for bay in bays)
+        all_bays = sum(bay.width_mm for bay in bays)
+        scale = max(scale, min((room - FRAME * len(bays)) / all_bays, WIDEST_BAY / widest_bay))
+        scale = min(scale, room / widest_bay)
+        upright_scale = max(scale, (NUMBER + 2.2) / flattest)
+        upright_scale = min(upright_scale, self.tallest / tallest_mm)
+        self.across, self.up = scale, upright_scale
+        self.size = NUMBER
+        if narrowest * scale < widest:
+            self.size = max(LEAST_NUMBER, NUMBER * narrowest * scale / widest)
+        self.bands: list[list[ChartBay]] = [[]]
+        used = 0.0
+        for bay in bays:
+            wide = bay.width_mm * scale + FRAME
+            if used + wide > room + 0.01 and self.bands[-1]:
+                self.bands.append([])
+                used = 0.0
+            self.bands[-1].append(bay)
+            used += wide
+        self.cells_height = tallest_mm * upright_scale
+        self.spots = 10.0 if any(bay.low_spot for bay in bays) else 0.0
+        self.band_height = self.cells_height + self.spots + LABEL + 9.0
+        self.height = self.band_height * len(self.bands) + self._key_height()
+
+    def _key_height(self) -> float:
+        if not self.with_key:
+            return 0.0
+        notes = self._note_lines()
+        return max(25.0, len(notes) * 8.6 + 8.0)
+
+    def _note_lines(self) -> list[str]:
+        words = [*self.chart.notes]
+        if self.chart.start:
+            words.insert(0, f"bays counted from {self.chart.start}")
+        text = typeset(" · ".join(words))
+        return lines(text, REGULAR, 7.0, self.width - KEY_WIDTH - GUTTER - 24.0) if text else []
+
+    def draw(self) -> None:
+        """Band by band from the top."""
+        top = self.height
+        for band in self.bands:
+            self._draw_band(band, top)
+            top -= self.band_height
+        if self.with_key:
+            self._draw_key(top)
+
+    def _draw_band(self, band: list[ChartBay], top: float) -> None:
+        pen = _Pen(self.canv, self.size)
+        x = GUTTER
+        for bay in band:
+            wide, high = bay.width_mm * self.across, bay.height_mm * self.up
+            pen.frames.append((x - FRAME, top - high - 1.5, FRAME, high + 3.0))
+            y = top
+            places = iter(bay.cells)
+            for row_share in bay.row_shares:
+                y -= high * row_share
+                cell_x = x
+                for col_share in bay.col_shares:
+                    pen.cell(next(places), (cell_x, y, wide * col_share, high * row_share))
+                    cell_x += wide * col_share
+            if bay.low_spot is not None:
+                pen.low_spot(bay.low_spot, bay.low_spot_under, (x + 0.6, top - high - 9.4, wide - 1.2, 8.2))
+            x += wide + FRAME
+        last = band[-1].height_mm * self.up
+        pen.frames.append((x - FRAME, top - last - 1.5, FRAME, last + 3.0))
+        pen.paint()
+        self._labels(band, top)
+
+    def _labels(self, band: list[ChartBay], top: float) -> None:
+        canvas = self.canv
+        canvas.setFillColor(INK)
+        canvas.setFont(BOLD, LABEL)
+        y = top - self.cells_height - self.spots - LABEL - 1.0
+        x = GUTTER
+        widest = max(width(typeset(bay.label, BOLD), BOLD, LABEL) for bay in band)
+        narrowest = min(bay.width_mm * self.across for bay in band)
+        every = 1 if widest + 1.5 <= narrowest + FRAME else int(widest / (narrowest + FRAME)) + 1
+        for number, bay in enumerate(band):
+            wide = bay.width_mm * self.across
+            if number % every == 0:
+                label = fitted(typeset(bay.label, BOLD), BOLD, LABEL, max(wide * every, 14.0))
+                canvas.drawCentredString(x + wide / 2, y, label)
+            x += wide + FRAME
+        canvas.setFont(REGULAR, 6.4)
+        canvas.setFillColor(SOFT)
+        if self.cells_height < 50.0:
+            canvas.saveState()
+            canvas.translate(6.6, top - self.cells_height / 2)
+            canvas.rotate(90)
+            canvas.drawCentredString(0, 0, self.chart.top if self.cells_height < 22.0 else f"{self.chart.top} up")
+            canvas.restoreState()
+            return
+        for word, at, anchor in ((self.chart.top, top, "right"), (self.chart.bottom, top - self.cells_height, "left")):
+            canvas.saveState()
+            canvas.translate(6.6, at)
+            canvas.rotate(90)
+            (canvas.drawRightString if anchor == "right" else canvas.drawString)(0, 0, word.upper())
+            canvas.restoreState()
+
+    def _draw_key(self, top: float) -> None:
+        canvas = self.canv
+        low, asked, high = (typeset(text) for text in self.chart.key)
+        canvas.setFont(REGULAR, 7.0)
+        canvas.setFillColor(SOFT)
+        y = top - 12.0
+        for line in self._note_lines():
+            canvas.drawString(GUTTER, y, line)
+            y -= 8.6
+        if not low:
+            return
+        x, y, cell, tall = self.width - KEY_WIDTH, top - 21.0, KEY_WIDTH / 2 / 3, 9.0
+        canvas.setLineWidth(0.5)
+        canvas.setStrokeColor(INK)
+        path = canvas.beginPath()
+        for number in range(3):
+            box = (x + number * cell, y, cell, tall)
+            hatch(path, box, hatch_gap(1.0 - number / 2))
+            canvas.rect(*box, stroke=1, fill=0)
+        canvas.drawPath(path, stroke=1, fill=0)
+        middle = x + 3 * cell
+        step = KEY_WIDTH / 2 / SHADES
+        for number in range(SHADES):
+            canvas.setFillColor(shade(number))
+            canvas.rect(middle + number * step, y, step, tall, stroke=0, fill=1)
+        canvas.setStrokeColor(ACCENT)
+        canvas.setLineWidth(1.8)
+        canvas.line(middle, y - 2.0, middle, y + tall + 2.0)
+        canvas.setFillColor(INK)
+        canvas.drawString(x, y + tall + 2.6, low)
+        canvas.drawRightString(x + KEY_WIDTH, y + tall + 2.6, high)
+        canvas.setFillColor(ACCENT)
+        canvas.setFont(BOLD, 7.2)
+        canvas.drawCentredString(middle, y + tall + 3.4, asked)
+
+
+class StripChartFlow(Flowable):
+    """Lowest to highest depth of each bay as an upright bar, its mean as a notch, against the specified depth."""
+
+    HEIGHT: Final = 96.0
+    LEFT: Final = 26.0
+    RIGHT: Final = 6.0
+
+    def __init__(self, chart: StripChart) -> None:
+        super().__init__()
+        self.chart = chart
+
+    def wrap(self, available_width: float, _available_height: float) -> tuple[float, float]:
+        """Size of the chart. [pt]"""
+        self.width = available_width
+        self.height = self.HEIGHT
+        return available_width, self.height
+
+    def _y(self, depth_mm: float) -> float:
+        return 14.0 + (self.height - 26.0) * depth_mm / self.chart.top_mm
+
+    def draw(self) -> None:
+        """Grid, bars, then the lines that they are held against."""
+        canvas, chart = self.canv, self.chart
+        left, right = self.LEFT, self.width - self.RIGHT
+        canvas.setFont(REGULAR, 6.6)
+        canvas.setLineWidth(0.4)
+        canvas.setStrokeColor(RULE)
+        canvas.setFillColor(SOFT)
+        for depth, text in chart.ticks:
+            canvas.line(left, self._y(depth), right, self._y(depth))
+            canvas.drawRightString(left - 4.0, self._y(depth) - 2.2, typeset(text))
+        step = (right - left) / len(chart.strips)
+        bar = min(9.0, step * 0.62)
+        spec = chart.specified[0]
+        solid, outline, hatches = canvas.beginPath(), canvas.beginPath(), canvas.beginPath()
+        notches, spots = canvas.beginPath(), canvas.beginPath()
+        for number, strip in enumerate(chart.strips):
+            x = left + step * (number + 0.5)
+            if strip.low_mm is not None and strip.high_mm is not None and strip.mean_mm is not None:
+                low, high = self._y(strip.low_mm), max(self._y(strip.high_mm), self._y(strip.low_mm) + 0.8)
+                under = min(max(self._y(spec), low), high)
+                if high > under:
+                    solid.rect(x - bar / 2, under, bar, high - under)
+                if under > low:
+                    box = (x - bar / 2, low, bar, under - low)
+                    outline.rect(*box)
+                    hatch(hatches, box, 2.6)
+                mean = self._y(strip.mean_mm)
+                notches.moveTo(x - bar / 2 - 1.6, mean)
+                notches.lineTo(x + bar / 2 + 1.6, mean)
+            if strip.low_spot_mm is not None:
+                y = self._y(strip.low_spot_mm)
+                spots.moveTo(x, y)
+                spots.lineTo(x - 2.6, y - 4.4)
+                spots.lineTo(x + 2.6, y - 4.4)
+                spots.close()
+        canvas.setFillColor(shade(3))
+        canvas.drawPath(solid, stroke=0, fill=1)
+        canvas.setStrokeColor(INK)
+        canvas.setLineWidth(0.5)
+        canvas.drawPath(hatches, stroke=1, fill=0)
+        canvas.drawPath(outline, stroke=1, fill=0)
+        canvas.setLineWidth(1.1)
+        canvas.drawPath(notches, stroke=1, fill=0)
+        canvas.setFillColor(INK)
+        canvas.drawPath(spots, stroke=0, fill=1)
+        self._lines(left, right)
+        self._bay_labels(left, step)
+
+    def _lines(self, left: float, right: float) -> None:
+        canvas, chart = self.canv, self.chart
+        canvas.setStrokeColor(ACCENT)
+        canvas.setFillColor(ACCENT)
+        canvas.setFont(BOLD, 6.8)
+        canvas.setLineWidth(1.2)
+        canvas.line(left, self._y(chart.specified[0]), right, self._y(chart.specified[0]))
+        if chart.vapour is not None:
+            canvas.setDash(3.0, 2.0)
+            canvas.line(left, self._y(chart.vapour[0]), right, self._y(chart.vapour[0]))
+            canvas.setDash()
+        y = self.height - 7.0
+        x = left
+        for text, dash in ((chart.specified[1], False), *([(chart.vapour[1], True)] if chart.vapour else [])):
+            if dash:
+                canvas.setDash(3.0, 2.0)
+            canvas.line(x, y + 2.2, x + 13.0, y + 2.2)
+            canvas.setDash()
+            shown = typeset(text, BOLD)
+            canvas.drawString(x + 16.0, y, shown)
+            x += 30.0 + width(shown, BOLD, 6.8)
+        canvas.setFillColor(SOFT)
+        canvas.setFont(REGULAR, 6.8)
+        said = "bar: lowest to highest reading, hatched below the specified depth; notch: mean"
+        if any(strip.low_spot_mm is not None for strip in chart.strips):
+            said += "; wedge: low spot"
+        canvas.drawString(x, y, said)
+
+    def _bay_labels(self, left: float, step: float) -> None:
+        canvas = self.canv
+        canvas.setFillColor(INK)
+        canvas.setFont(BOLD, 6.0)
+        labels = [typeset(strip.label, BOLD) for strip in self.chart.strips]
+        widest = max(width(label, BOLD, 6.0) for label in labels) + 2.0
+        every = max(1, int(widest / step) + (1 if widest > step else 0))
+        for number, label in enumerate(labels):
+            if number % every == 0:
+                canvas.drawCentredString(left + step * (number + 0.5), 4.0, label)

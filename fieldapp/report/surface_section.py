@@ -1,0 +1,437 @@
+"""The chapter of one surface: charts, figures, checks, vapour depth, density, touch-up, sample, rounds, photos, repairs."""
+
+from collections.abc import Callable
+
+from fieldapp.reckoning.inputs import CountedBay
+from fieldapp.reckoning.results import BayResult
+from fieldapp.reckoning.vapour import vapour_class
+from fieldapp.reckoning.wording import count
+from fieldapp.records.record import Record
+from fieldapp.records.repairs import DeficiencyHistory, deficiency_histories
+from fieldapp.report.charts import depth_chart, strip_chart
+from fieldapp.report.model import Part, Photo, Section, Sentence, Table
+from fieldapp.report.sentences import surface_sentence
+from fieldapp.report.terms import ASSEMBLIES, BASES, BROKE, CHOSEN, SORTS, WHERE, check_name, ends
+from fieldapp.report.view import JobView, SurfaceView
+
+RIGHT = frozenset
+
+
+def surface_section(job: JobView, view: SurfaceView) -> Section:
+    """Everything that the report says of one surface."""
+    makers: tuple[Callable[[JobView, SurfaceView], Part | None], ...] = (
+        _chart,
+        _strips,
+        _figures,
+        _checks,
+        _vapour,
+        _density,
+        _pulls,
+        _touch_up,
+        _sample,
+        _rounds,
+        _self_check,
+        _deficiencies,
+        _objections,
+        _low_spots,
+        _conditions,
+        _photos,
+    )
+    parts = (part for make in makers if (part := make(job, view)) is not None)
+    foam = view.foam
+    kind = f"{foam.cell} cell, {foam.name}" if foam else "foam not described"
+    place = next((f"{p.name}, " for p in job.job.places if p.key == view.result.place), "")
+    worst = next((check for check in view.result.checks if check.result == view.result.result), None)
+    return Section(
+        key=view.result.key,
+        title=view.name,
+        subtitle=f"{place}{ASSEMBLIES[view.counted.assembly]}, {kind}, {count(view.result.bays_total, 'bay')}",
+        parts=(Part("", prose=(surface_sentence(view),)), *parts),
+        result=view.result.result,
+        word=worst.word if worst is not None and view.result.result == "short" and worst.word else view.result.result,
+    )
+
+
+def _chart(job: JobView, view: SurfaceView) -> Part | None:
+    if not view.result.bays:
+        return None
+    return Part("Depth at each point", chart=depth_chart(view, job.job.bays[view.result.key]))
+
+
+def _strips(_job: JobView, view: SurfaceView) -> Part | None:
+    strips = strip_chart(view)
+    return None if strips is None else Part("Lowest, mean and highest depth of each bay", strips=strips)
+
+
+def _figures(job: JobView, view: SurfaceView) -> Part:
+    words, result, spec = view.words, view.result, view.counted.spec
+    floor = (
+        f", nowhere under {words.depth(spec.floor_mm)}" if spec.basis == "average-with-floor" and spec.floor_mm else ""
+    )
+    rows: list[tuple[str, str]] = [
+        ("Asked", f"{words.depth(spec.depth_mm)}, {BASES[spec.basis]}{floor}"),
+        ("Area laid out; read", f"{words.area(result.area_m2)}; {words.area(result.area_read_m2)}"),
+        ("Points; read; blocked", f"{result.points:,}; {result.points_read:,}; {result.points_blocked:,}"),
+    ]
+    depth, rsi, under = result.depth_mm, result.rsi, result.under_spray
+    if depth.mean is not None and depth.max is not None:
+        rows.append(("Mean depth", words.fine_depth(depth.mean)))
+        low = words.depth(depth.min) if depth.min is not None else ""
+        rows.append(("Lowest; highest depth", f"{low}; {words.depth(depth.max)}"))
+    if depth.sd is not None:
+        rows.append(("Standard deviation of the readings", words.fine_depth(depth.sd)))
+    if under.area_share is not None and under.deep_area_share is not None and under.missing_m3 is not None:
+        read = words.percent(result.area_read_m2 / result.area_m2)
+        rows.append(
+            (f"Area under {words.depth(spec.depth_mm)}", f"{words.percent(under.area_share)} of the {read} read")
+        )
+        rows.append(("Area under 70 % of that", words.percent(under.deep_area_share)))
+        rows.append(("Foam missing to that depth", words.foam(under.missing_m3)))
+    if rsi.delivered is not None and rsi.nominal is not None and rsi.uneven_loss is not None:
+        rows.append(("Delivered R, at most, by these readings", words.r(rsi.delivered)))
+        rows.append(("Nominal R at the mean depth", words.r(rsi.nominal)))
+        rows.append(("Loss to unevenness", words.r(max(rsi.uneven_loss, 0.0))))
+        if rsi.beyond_tested:
+            rows.append(("Depths outside the foam's tested table", "yes: the R there rests on no test"))
+    if rsi.in_assembly is not None:
+        rows.append(("Foam's R in the assembly with its layers", words.r(rsi.in_assembly)))
+    if result.u_w_m2k is not None:
+        rows.append((_framing_name(view), words.u(result.u_w_m2k)))
+    rows.extend(_setting(view))
+    return Part("Figures", table=Table(("", ""), tuple(rows), (0.42, 0.58)))
+
+
+def _framing_name(view: SurfaceView) -> str:
+    framing = view.counted.framing
+    material = framing.material if framing else "none"
+    if material == "steel":
+        return "U with steel framing (table from memory: check it)"
+    return "U with wood framing, parallel paths" if material == "wood" else "U of the clear field"
+
+
+def _setting(view: SurfaceView) -> list[tuple[str, str]]:
+    body, words = view.thing.body, view.words
+    rows: list[tuple[str, str]] = []
+    probe = body.get("probe") or {}
+    held = "plumb, times the cosine of the pitch" if probe.get("direction") == "plumb" else "square to the surface"
+    kind = f"{probe['kind']}, " if probe.get("kind") else ""
+    rows.append(("Probe", f"{kind}held {held}"))
+    rows.append(("Which bays", CHOSEN[view.counted.chosen] + (f", seed {body['seed']}" if body.get("seed") else "")))
+    for label, name in (("Substrate", "substrate"), ("Bays counted from", "numbered_from")):
+        if body.get(name):
+            rows.append((label, str(body[name])))
+    if view.max_depth_mm is not None:
+        reason = f" ({body['max_depth_reason']})" if body.get("max_depth_reason") else ""
+        rows.append(("Greatest depth allowed", f"{words.depth(view.max_depth_mm)}{reason}"))
+    cover = body.get("cover") or {}
+    rows.append(("Cover over the foam", ", ".join(str(cover[n]) for n in cover if cover[n]) or "not listed"))
+    return rows
+
+
+def _checks(_job: JobView, view: SurfaceView) -> Part:
+    rows = tuple(
+        (check_name(check.id, view.words.vapor), check.word, check.asked, check.found) for check in view.result.checks
+    )
+    marks = {number: check.result for number, check in enumerate(view.result.checks)}
+    return Part(
+        "Checks", table=Table(("Check", "Result", "Asked", "Found"), rows, (0.16, 0.13, 0.33, 0.38), marks=marks)
+    )
+
+
+def _vapour(_job: JobView, view: SurfaceView) -> Part | None:
+    if view.counted.vapour.rule not in ("depth", "permeance") or not view.result.points_read:
+        return None
+    words = view.words
+    rows: list[tuple[str, ...]] = []
+    marks = {}
+    for number, bay in enumerate(view.result.bays):
+        if bay.vapour is None:
+            continue
+        marks[number] = bay.vapour
+        lowest = "" if bay.min_mm is None else words.depth_held(bay.min_mm, view.vapour_depth_mm or 0.0)
+        perm = "" if bay.permeance_ng is None else words.permeance(bay.permeance_ng)
+        retarder = "" if bay.permeance_ng is None else vapour_class(bay.permeance_ng) or "none"
+        rows.append((bay.label, bay.vapour, lowest, perm, retarder))
+    head = ("Bay", "Result", "Lowest", "Permeance", "Class")
+    title = f"{words.vapor.capitalize()} depth, bay by bay"
+    prose: tuple[Sentence, ...] = ()
+    if view.foam is not None and view.foam.permeability_ng_m is None:
+        prose = (Sentence("The foam's permeability is not given, so no permeance is reckoned."),)
+    table = Table(head, tuple(rows), (0.14, 0.24, 0.2, 0.24, 0.18), RIGHT({2, 3}), marks, columns=2)
+    return Part(title, prose, table)
+
+
+def _density(_job: JobView, view: SurfaceView) -> Part | None:
+    each = view.result.density.each
+    if not each:
+        return None
+    words, foam = view.words, view.foam
+    low = foam.density_min_kg_m3 if foam else None
+    high = foam.density_max_kg_m3 if foam else None
+    rows = tuple(
+        (
+            core.label,
+            next((bay.label for bay in view.result.bays if bay.key == core.bay), ""),
+            words.density_held(core.kg_m3, low, high),
+            "" if core.plus_minus_kg_m3 is None else f"± {words.density(core.plus_minus_kg_m3)}",
+            {"with skin": "with skin: not held against the limits of core density", "no limits": "no limits given"}.get(
+                core.word, "a limit lies within the plus-minus: unproven" if core.word == "unproven" else core.word
+            ),
+        )
+        for core in each
+    )
+    head = ("Core", "Bay", "Density", "Plus-minus", "Against the foam's limits")
+    return Part("Density, core by core", table=Table(head, rows, (0.16, 0.1, 0.17, 0.17, 0.4), RIGHT({2, 3})))
+
+
+def _pulls(job: JobView, view: SurfaceView) -> Part | None:
+    keys = {bay.key: bay.label for bay in view.result.bays}
+    pulls = [record for record in job.job.of("pull") if record.body["bay"] in keys]
+    told = tuple(
+        Sentence(
+            f"Bay {keys[record.body['bay']]}: "
+            + (f"{record.body['kpa']:g} kPa" if record.body.get("kpa") is not None else "pulled by hand")
+            + f", {BROKE[record.body.get('broke')]}. {record.body.get('note') or ''}".rstrip()
+        )
+        for record in pulls
+    )
+    return Part("Adhesion, pulled", told, bulleted=True) if told else None
+
+
+def _touch_up(_job: JobView, view: SurfaceView) -> Part | None:
+    words, repair = view.words, view.result.touch_up
+    bays = [bay for bay in view.result.bays if bay.touch_up.volume_m3 or _short_low_spot(view, bay)]
+    if not bays and not repair.volume_m3:
+        return None
+    bays.sort(key=lambda bay: -(bay.touch_up.volume_m3 or 0.0))
+    rows = tuple(
+        (
+            bay.label,
+            words.depth(bay.touch_up.deepest_missing_mm or 0.0) if bay.touch_up.volume_m3 else "low spot only",
+            words.foam(bay.touch_up.volume_m3 or 0.0) if bay.touch_up.volume_m3 else "",
+            words.foam(bay.touch_up.order_m3 or 0.0) if bay.touch_up.volume_m3 else "",
+            "ask the sheet" if bay.touch_up_passes is None else str(bay.touch_up_passes),
+            "waits to be read again" if bay.waiting_for_reading else "",
+        )
+        for bay in bays
+    )
+    head = ("Bay", "Deepest to add", "Missing", "To order", "Passes", "")
+    prose: list[Sentence] = []
+    if repair.volume_m3 and repair.order_m3 is not None:
+        mass = f", {words.mass(repair.mass_kg)} at nominal density" if repair.mass_kg else ""
+        prose.append(
+            Sentence(
+                f"In all {words.foam(repair.volume_m3)} are missing{mass}; to order {words.foam(repair.order_m3)}, least "
+                "pass and losses included. It would bring the depth to specification, if read again."
+            )
+        )
+    table = Table(head, rows, (0.14, 0.18, 0.18, 0.18, 0.12, 0.2), RIGHT({1, 2, 3, 4})) if rows else None
+    return Part("Touch-up, bay by bay", tuple(prose), table)
+
+
+def _short_low_spot(view: SurfaceView, bay: BayResult) -> bool:
+    return bay.low_spot_mm is not None and "short" in (bay.lowest_depth, bay.vapour)
+
+
+def _sample(_job: JobView, view: SurfaceView) -> Part | None:
+    result, words = view.result, view.words
+    if not result.bays_read:
+        return None
+    told: list[str] = []
+    if result.sampling.short_bays_at_most is None:
+        picked = CHOSEN[view.counted.chosen]
+        told.append(
+            f"{result.bays_read} of {count(result.bays_total, 'bay')} were read and {picked}: such a sample says nothing "
+            "of the bays that were not read."
+        )
+    elif result.bays_read < result.bays_total:
+        told.append(
+            f"{result.bays_read} of {count(result.bays_total, 'bay')} were read, picked at random. With 95 % confidence at "
+            f"most {result.sampling.short_bays_at_most} of the {result.bays_total} can be short in lowest depth or "
+            f"{words.vapor} depth."
+        )
+    else:
+        told.append("Every bay was read; between the points nobody did.")
+    if result.sampling.mean_lower_mm is not None:
+        told.append(
+            f"The readings support a mean depth of at least {words.fine_depth(result.sampling.mean_lower_mm)} "
+            "(95 %, one-sided)."
+        )
+    return Part("What the sample supports", (Sentence(" ".join(told)),))
+
+
+def _rounds(_job: JobView, view: SurfaceView) -> Part | None:
+    """Bays that were touched up or read in more than one round, first round against last."""
+    words = view.words
+    rows: list[tuple[str, ...]] = []
+    for bay, result in view.pairs():
+        found = view.counts[bay.key]
+        if not found.opened and found.last_round == 1:
+            continue
+        before = [found.depth_mm(place, 1) for place in range(len(bay.depths_mm))]
+        read = [depth for depth in before if depth is not None]
+        first = words.depth(min(read)) if read else "not read"
+        mean_before = _mean(before, bay.areas_m2)
+        if result.waiting_for_reading:
+            after, mean_after = "not read again", ""
+        else:
+            now = [depth for depth in bay.depths_mm if depth is not None]
+            after = words.depth(min(now)) if now else "not read"
+            mean_after = "" if result.mean_mm is None else words.depth(result.mean_mm)
+        means = "" if mean_before is None else words.depth(mean_before)
+        rows.append((bay.label, first, means, str(max(found.opened, default=1)), after, mean_after, result.result))
+    if not rows:
+        return None
+    head = ("Bay", "Round 1: lowest", "mean", "Touch-up opened", "Now: lowest", "mean", "Result")
+    table = Table(head, tuple(rows), (0.1, 0.16, 0.12, 0.18, 0.18, 0.12, 0.14), RIGHT({1, 2, 4, 5}))
+    return Part("Rounds, before and after touch-up", (), table)
+
+
+def _mean(depths: list[float | None], areas: tuple[float, ...]) -> float | None:
+    total = area_read = 0.0
+    for depth, area in zip(depths, areas, strict=True):
+        if depth is not None:
+            total += depth * area
+            area_read += area
+    return total / area_read if area_read else None
+
+
+def _self_check(job: JobView, view: SurfaceView) -> Part | None:
+    """Shown once, with the first surface."""
+    agreement = job.result.agreement
+    if agreement is None or job.result.surfaces[0].key != view.result.key:
+        return None
+    words = view.words
+    text = (
+        f"At {agreement.pairs} points of this job the applicator's self-check and the inspection were read in the same "
+        f"round. Inspection less self-check is {words.fine_depth(agreement.bias_mm)} on average; 95 % of such differences "
+        f"lie between {words.fine_depth(agreement.lower_mm)} and {words.fine_depth(agreement.upper_mm)} (limits of "
+        "agreement)."
+    )
+    return Part("Self-check against inspection", (Sentence(text),))
+
+
+def _own_histories(job: JobView, view: SurfaceView) -> list[tuple[DeficiencyHistory, str]]:
+    labels = {bay.key: f"bay {bay.label}" for bay in view.result.bays}
+    found = []
+    for history in deficiency_histories(job.job):
+        body = history.deficiency.body
+        where = labels.get(body.get("bay") or "")
+        if where is None and body.get("surface") == view.result.key:
+            where = "the surface"
+        if where is not None:
+            found.append((history, where))
+    return found
+
+
+def _deficiencies(job: JobView, view: SurfaceView) -> Part | None:
+    rows: list[tuple[str, ...]] = []
+    for history, where in _own_histories(job, view):
+        body = history.deficiency.body
+        happened = [f"noted {job.date(history.deficiency.at)} by {history.deficiency.by}"]
+        happened += [
+            f"repair {job.date(r.at)} by {r.by}: {r.body.get('text') or ''}".rstrip(": ") for r in history.repairs
+        ]
+        happened += [f"accepted {job.date(r.at)} by {r.by}" for r in history.acceptances]
+        noted = f"{SORTS[body['sort']]}. {body.get('text') or ''}".strip()
+        state = "note" if body["severity"] == "note" else history.state
+        rows.append((where, body["severity"], noted, state, "; ".join(happened)))
+    if not rows:
+        return None
+    head = ("Where", "Severity", "What", "State", "History")
+    return Part("Deficiencies", table=Table(head, tuple(rows), (0.12, 0.11, 0.3, 0.12, 0.35)))
+
+
+def _objections(job: JobView, view: SurfaceView) -> Part | None:
+    own = {view.result.key, *(bay.key for bay in view.result.bays)}
+    own |= {record.id for record in job.job.records if own.intersection(_touches(record))}
+    told = tuple(
+        Sentence(f"{record.by}, {job.date(record.at)}: {record.body['text']}")
+        for record in job.job.of("objection")
+        if record.body["about"] in own
+    )
+    return Part("Objections", told, bulleted=True) if told else None
+
+
+def _touches(record: Record) -> list[str]:
+    return [key for key in (record.body.get("bay"), record.body.get("surface")) if isinstance(key, str)]
+
+
+def _low_spots(job: JobView, view: SurfaceView) -> Part | None:
+    rows: list[tuple[str, ...]] = []
+    for bay in view.counted.bays:
+        for record in view.counts[bay.key].counting_low_spots():
+            depth = view.words.depth(view.counts[bay.key].low_spot_mm(record))
+            rows.append((bay.label, depth, WHERE[record.body["where"]], f"{job.date(record.at)}, {record.by}"))
+    if not rows:
+        return None
+    table = Table(("Bay", "Depth", "Where", "Found"), tuple(rows), (0.12, 0.16, 0.32, 0.4), RIGHT({1}))
+    return Part("Low spots found between the points", table=table)
+
+
+def _conditions(job: JobView, view: SurfaceView) -> Part | None:
+    keys = {view.result.key, *(bay.key for bay in view.result.bays)}
+    told: list[Sentence] = []
+    for record in job.job.of("conditions"):
+        about = {record.body.get("surface"), record.body.get("bay")}
+        if not about & keys and (about != {None} or job.result.surfaces[0].key != view.result.key):
+            continue
+        told.append(Sentence(_conditions_text(job, record)))
+    return Part("Conditions", tuple(told), bulleted=True) if told else None
+
+
+def _conditions_text(job: JobView, record: Record) -> str:
+    words, body = job.words, record.body
+    said = []
+    if body.get("air_c") is not None:
+        said.append(f"air {words.temperature(body['air_c'])}")
+    if body.get("rh") is not None:
+        said.append(f"relative humidity {words.percent(body['rh'])}")
+    if body.get("substrate_c") is not None:
+        said.append(f"substrate {words.temperature(body['substrate_c'])}")
+    if body.get("wood_mc"):
+        said.append(f"wood moisture {', '.join(words.percent(share) for share in body['wood_mc'])}")
+    if body.get("note"):
+        said.append(str(body["note"]))
+    return f"{job.date(record.at)}, {job.clock(record.at)}: {'; '.join(said) or 'nothing noted'}"
+
+
+def _photos(job: JobView, view: SurfaceView) -> Part | None:
+    labels = {bay.key: bay for bay in view.counted.bays}
+    about = {record.id: record for record in job.job.records}
+    photos: list[tuple[int, Photo]] = []
+    order = {bay.key: number for number, bay in enumerate(view.counted.bays, 1)}
+    for record in job.job.of("photo"):
+        subject = about.get(record.body.get("about") or "")
+        bay_key = record.body.get("bay") or (subject.body.get("bay") if subject else None)
+        surface_key = record.body.get("surface") or (subject.body.get("surface") if subject else None)
+        if bay_key in labels:
+            photos.append((order[bay_key], photo_of(job, record, view, labels[bay_key], subject)))
+        elif surface_key == view.result.key:
+            photos.append((0, photo_of(job, record, view, None, subject)))
+    photos.sort(key=lambda pair: pair[0])
+    return Part("Photos", photos=tuple(photo for _, photo in photos)) if photos else None
+
+
+def photo_of(
+    job: JobView, record: Record, view: SurfaceView | None, bay: CountedBay | None, subject: Record | None
+) -> Photo:
+    """A photo with what it shows, where, when and by whom."""
+    body = record.body
+    where = []
+    if bay is not None:
+        where.append(f"bay {bay.label}")
+        row, col = body.get("row"), body.get("col")
+        if row is not None and view is not None:
+            where.append(point_name(view, bay, int(row), int(col or 0)))
+    if subject is not None and subject.body.get("depth_mm") is not None and view is not None:
+        where.append(f"reads {view.words.depth(subject.body['depth_mm'])}")
+    detail = ", ".join([*where, f"{job.date(record.at)} {job.clock(record.at)}", record.by])
+    return Photo(body["sha256"], body.get("caption") or (body.get("shows") or "photo").replace("-", " "), detail)
+
+
+def point_name(view: SurfaceView, bay: CountedBay, row: int, col: int) -> str:
+    """'point 3 from the ridge', with its column where there are several."""
+    top, _ = ends(view.counted.assembly)
+    text = f"point {row + 1} from the {top}" if bay.rows > 1 else f"point {col + 1} from the left"
+    return f"{text}, {col + 1} from the left" if bay.rows > 1 and bay.cols > 1 else text
