@@ -10,7 +10,7 @@ from math import ceil
 
 from fieldapp.reckoning.inputs import CountedBay, Foam, Spec, Vapour
 from fieldapp.reckoning.limits import DEPTH_TOLERANCE_MM, least_meeting_mm
-from fieldapp.reckoning.resistance import Table
+from fieldapp.reckoning.resistance import PerMetre, Table
 from fieldapp.reckoning.results import TouchUp
 from fieldapp.reckoning.units import M3_PER_BOARD_FOOT
 
@@ -72,7 +72,8 @@ def bay_figures(bay: CountedBay, foam: Foam | None, series_rsi: float) -> BayFig
     area = sum_depth = shifted = shifted_squares = area_depth = conductance = flow = 0.0
     low = high = shift = 0.0
     bare = beyond = False
-    rsi = foam.resistance.rsi if foam else None
+    resistance = foam.resistance if foam else None
+    rsi_per_mm = resistance.rsi_per_m / 1000.0 if isinstance(resistance, PerMetre) else 0.0
     for depth, point_area in zip(bay.depths_mm, bay.areas_m2, strict=True):
         if depth is None:
             continue
@@ -90,15 +91,17 @@ def bay_figures(bay: CountedBay, foam: Foam | None, series_rsi: float) -> BayFig
         shifted += off
         shifted_squares += off * off
         area_depth += point_area * depth
-        if rsi:
-            conductance += point_area / (series_rsi + rsi(depth))
+        if rsi_per_mm:
+            conductance += point_area / (series_rsi + rsi_per_mm * depth)
+        elif resistance is not None:
+            conductance += point_area / (series_rsi + resistance.rsi(depth))
         if depth > 0.0:
             flow += point_area / depth
         else:
             bare = True
-    if foam and isinstance(foam.resistance, Table) and read:
+    if isinstance(resistance, Table) and read:
         least = low if low > DEPTH_TOLERANCE_MM else _least_not_bare(bay)
-        beyond = foam.resistance.beyond_tested(least) or foam.resistance.beyond_tested(high)
+        beyond = resistance.beyond_tested(least) or resistance.beyond_tested(high)
     squares = shifted_squares - shifted * shifted / read if read else 0.0
     points = len(bay.depths_mm)
     return BayFigures(
@@ -167,32 +170,43 @@ def bay_shortfall(bay: CountedBay, figures: BayFigures, spec: Spec, limit_mm: fl
         limit_mm: The point limit of a touch-up. [mm]
         min_pass_mm: Least depth that can be sprayed in a pass; a smaller gap is ordered as this. [mm]
     """
-    short = Shortfall(area_after=figures.area_depth, area_after_order=figures.area_depth)
     if figures.low_mm is None:
-        return short
+        return Shortfall()
     meets_spec = least_meeting_mm(spec.depth_mm)
     meets_deep = least_meeting_mm(0.7 * spec.depth_mm)
     meets_limit = least_meeting_mm(limit_mm)
-    if figures.low_mm >= meets_spec and figures.low_mm >= meets_limit:
-        return short
+    meets_both = max(meets_spec, meets_limit)
+    if figures.low_mm >= meets_both:
+        return Shortfall(area_after=figures.area_depth, area_after_order=figures.area_depth)
+    under = deep_under = missing = added = ordered = deepest = highest_after = 0.0
     for depth, area in zip(bay.depths_mm, bay.areas_m2, strict=True):
-        if depth is None:
+        if depth is None or depth >= meets_both:
             continue
         if depth < meets_spec:
-            short.under_m2 += area
-            short.missing_m3 += area * (spec.depth_mm - depth) / 1000.0
+            under += area
+            missing += area * (spec.depth_mm - depth)
             if depth < meets_deep:
-                short.deep_under_m2 += area
+                deep_under += area
         if depth < meets_limit:
             lack = limit_mm - depth
-            sprayed = max(lack, min_pass_mm)
-            short.touch_up_m3 += area * lack / 1000.0
-            short.order_m3 += area * sprayed / 1000.0
-            short.deepest_mm = max(short.deepest_mm, lack)
-            short.highest_after_mm = max(short.highest_after_mm, depth + sprayed)
-            short.area_after += area * lack
-            short.area_after_order += area * sprayed
-    return short
+            sprayed = lack if lack > min_pass_mm else min_pass_mm
+            added += area * lack
+            ordered += area * sprayed
+            if lack > deepest:
+                deepest = lack
+            if depth + sprayed > highest_after:
+                highest_after = depth + sprayed
+    return Shortfall(
+        under_m2=under,
+        deep_under_m2=deep_under,
+        missing_m3=missing / 1000.0,
+        touch_up_m3=added / 1000.0,
+        order_m3=ordered / 1000.0,
+        deepest_mm=deepest,
+        highest_after_mm=highest_after,
+        area_after=figures.area_depth + added,
+        area_after_order=figures.area_depth + ordered,
+    )
 
 
 def passes(deepest_missing_mm: float, max_pass_mm: float | None) -> int | None:

@@ -120,9 +120,8 @@ def lowest_depth(seen: Seen, words: Wording) -> Check | None:
     if lowest is None:
         return _check("lowest-depth", "unproven", asked, NOTHING_READ)
     where = next(bay for bay in seen.bays if bay.min_mm == lowest)
-    found = f"lowest {words.depth_held(lowest, limit)} in bay {where.label}"
-    if where.low_spot_mm == lowest:
-        found += ", a low spot"
+    low_spot = ", a low spot" if where.low_spot_mm == lowest else ""
+    found = f"lowest {words.depth_held(lowest, limit)} (bay {where.label}{low_spot})"
     if spec.basis is None:
         return _check("lowest-depth", "unproven", asked, found)
     short = [bay for bay in seen.bays if bay.lowest_depth == "short"]

@@ -97,7 +97,7 @@ class DensityFigures:
     each: tuple[CoreResult, ...]
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(slots=True)  # not frozen: one is made for every bay, and freezing triples that
 class TouchUp:
     """What would bring a surface or a bay to specification, if read again."""
 
@@ -120,7 +120,7 @@ class Sampling:
     short_bays_at_most: int | None
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(slots=True)  # not frozen: one is made for every bay, and freezing triples that
 class BayResult:
     """One bay."""
 

@@ -56,7 +56,7 @@ def t_quantile(probability: float, degrees: int) -> float:
     return (low + high) / 2.0
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(slots=True)  # not frozen: one is made for every bay
 class SampledBay:
     """A bay that was read: its area [m2], mean depth [mm], within-bay variance [mm2] (None with one point) and points."""
 

@@ -335,17 +335,18 @@ def _bay_result(
     lowest_depth = _bay_lowest_depth(surface, found) if provable else "unproven"
     vapour = _bay_vapour(surface, found, provable)
     too_deep = max_depth_mm is not None and found.high_mm is not None and depth_over(found.high_mm, max_depth_mm)
-    parts: list[Result] = ["meets" if found.is_read else "unproven"]
-    parts.extend(part for part in (lowest_depth, vapour) if part is not None)
-    if too_deep:
-        parts.append("short")
+    result: Result = "meets" if found.is_read else "unproven"
+    if not provable or "unproven" in (lowest_depth, vapour):
+        result = "unproven"
+    if provable and (too_deep or "short" in (lowest_depth, vapour)):
+        result = "short"
     repair = NO_TOUCH_UP
     if found.points_read:
         repair = touch_up(lack.touch_up_m3, lack.order_m3, lack.deepest_mm, lack.highest_after_mm, foam, max_depth_mm)
     return BayResult(
         key=bay.key,
         label=bay.label,
-        result=worst(parts) if provable else "unproven",
+        result=result,
         round=bay.round,
         points=found.points,
         points_read=found.points_read,

@@ -157,6 +157,14 @@ class Wording:
         """'2.10 pcf' or '33.7 kg/m³'."""
         return f"{half_up(kg_m3 / KG_M3_PER_PCF, 2)} pcf" if self.is_ip else f"{half_up(kg_m3, 1)} kg/m³"
 
+    def plus_minus(self, kg_m3: float) -> str:
+        """How far a density can be off, to one more place where it would read as nothing: '± 0.02 pcf'."""
+        value, unit = (kg_m3 / KG_M3_PER_PCF, "pcf") if self.is_ip else (kg_m3, "kg/m³")
+        places = 2 if self.is_ip else 1
+        while places < 5 and half_up(value, places).is_zero() and value > 0.0:
+            places += 1
+        return f"± {half_up(value, places)} {unit}"
+
     def mass(self, mass_kg: float) -> str:
         """'12 lb' or '5.4 kg'."""
         return f"{_two_figures(mass_kg / KG_PER_LB)} lb" if self.is_ip else f"{_two_figures(mass_kg)} kg"

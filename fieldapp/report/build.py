@@ -120,7 +120,7 @@ def _line(view: JobView, surface: SurfaceView) -> SurfaceLine:
         blank if depth.mean is None else (words.depth_held(depth.mean, spec.depth_mm), ""),
         blank
         if under.area_share is None
-        else (words.percent(under.area_share), f"of {words.percent(result.area_read_m2 / result.area_m2)} read"),
+        else (words.percent(under.area_share), _of_read(words.percent(result.area_read_m2 / result.area_m2))),
         blank
         if result.rsi.delivered is None
         else (words.r_held(result.rsi.delivered, spec.rsi or 0.0), f"asked {words.r(spec.rsi)}" if spec.rsi else ""),
@@ -137,6 +137,10 @@ def _line(view: JobView, surface: SurfaceView) -> SurfaceLine:
         word=word if result.result == "short" else result.result,
         cells=tuple(cells),
     )
+
+
+def _of_read(share: str) -> str:
+    return "of all, read" if share == "100 %" else f"of {share} read"
 
 
 def _vapour_cell(surface: SurfaceView) -> tuple[str, str]:

@@ -59,12 +59,17 @@ def surface_clauses(view: SurfaceView) -> list[tuple[str, list[BayResult]]]:
             found.append((f"it is {lowest} deep at its thinnest, under the {limit} {asked}", low))
         else:
             text = f"{len(low)} of its {count(result.bays_total, 'bay')} {_is_are(len(low))} under the {limit} {asked}"
-            found.append((f"{text}{where_thin(view)}, the lowest {lowest} in bay {worst.label}", low))
+            found.append((f"{text}{where_thin(view)}, the lowest {lowest} (bay {worst.label})", low))
     if view.is_short("mean-depth") and result.depth_mm.mean is not None:
         mean = words.depth_held(result.depth_mm.mean, spec.depth_mm)
         found.append((f"its mean depth is {mean} where {words.depth(spec.depth_mm)} is specified", []))
     if view.is_short("vapour"):
-        found.append(_vapour_clause(view))
+        clause, bays = _vapour_clause(view)
+        if low and bays == low and view.counted.vapour.depth_mm == spec.single_point_mm:
+            before, named = found.pop()
+            found.append((f"{before}; {words.depth(spec.single_point_mm)} is also its {words.vapor} depth", named))
+        else:
+            found.append((clause, bays))
     if view.is_short("under-spray") and result.under_spray.area_share is not None:
         share, most = result.under_spray.area_share, spec.under_area_share_max or 0.0
         text = f"{words.percent_held(share, most)} of the area read is under {words.depth(spec.depth_mm)}"
@@ -258,43 +263,40 @@ def to_do(view: JobView) -> tuple[Sentence, ...]:
 
 
 def _foam_steps(view: SurfaceView) -> list[Sentence]:
+    """What to add where and how, and what to read again after it: one step for a surface."""
     words, foam, repair = view.words, view.foam, view.result.touch_up
-    steps: list[Sentence] = []
     short = [bay for bay in view.result.bays if bay.touch_up.volume_m3]
+    said: list[str] = []
     if repair.volume_m3:
-        what = f"add up to {words.depth(repair.deepest_missing_mm or 0.0)}"
         amount = f"{words.foam(repair.volume_m3)} missing"
-        if repair.order_m3 and abs(repair.order_m3 - repair.volume_m3) > 1e-12:
-            amount += f", {words.foam(repair.order_m3)} to order"
-        where = f", {view.named(short)}" if short else ", spread over the area read"
-        text = f"{view.name}{where}: {what}, {passes_text(view, repair.passes)}; {amount}."
-        if foam is not None and foam.pass_wait_min and (repair.passes or 0) > 1:
-            text += f" Wait {foam.pass_wait_min:g} min between passes by the data sheet; the foam must have cooled."
-        if repair.exceeds_max_depth and view.max_depth_mm is not None:
-            text += (
-                f" Some of it would exceed {words.depth(view.max_depth_mm)}, the limit entered: ask before spraying."
-            )
-        steps.append(Sentence(text, frozenset(bay.key for bay in short)))
-    spots = [
-        bay
-        for bay in view.result.bays
-        if bay.low_spot_mm is not None and "short" in (bay.lowest_depth, bay.vapour) and not bay.touch_up.volume_m3
-    ]
+        if repair.order_m3 and repair.order_m3 > repair.volume_m3:
+            amount += f", order {words.foam(repair.order_m3)}"
+        where = view.named(short) if short else "over the area read"
+        deepest = words.depth(repair.deepest_missing_mm or 0.0)
+        said.append(f"add up to {deepest} in {where}: {amount}, {passes_text(view, repair.passes)}")
+    spots = [bay for bay in view.result.bays if is_short_low_spot(bay) and not bay.touch_up.volume_m3]
     if spots:
         each = listed([f"bay {bay.label} ({words.depth(bay.low_spot_mm or 0.0)})" for bay in spots])
-        limit = words.depth(view.point_limit_mm)
-        steps.append(
-            Sentence(f"{view.name}: fill the low spots of {each} to {limit}.", frozenset(b.key for b in spots))
-        )
-    if again := [bay for bay in view.result.bays if "short" in (bay.lowest_depth, bay.vapour)]:
+        said.append(f"fill the low spot of {each} to {words.depth(view.point_limit_mm)}")
+    again = [bay for bay in view.result.bays if "short" in (bay.lowest_depth, bay.vapour)]
+    if again:
         first = [bay for bay in again if bay.vapour == "short"]
-        text = (
-            f"{view.name}: read {view.named(again)} again before anything covers {'it' if len(again) == 1 else 'them'}"
-        )
-        if first and len(first) < len(again):
-            text += f"; {view.named(first)} first"
-        steps.append(Sentence(f"{text}.", frozenset(bay.key for bay in again)))
-    return steps
+        which = "them" if len(again) > 1 else "it"
+        order = f", {view.named(first)} first" if first and len(first) < len(again) else ""
+        said.append(f"read {which} again before anything covers {which}{order}")
+    if not said:
+        return []
+    text = f"{view.name}: {'; '.join(said)}."
+    if foam is not None and foam.pass_wait_min and (repair.passes or 0) > 1:
+        text += f" Wait {foam.pass_wait_min:g} min between passes by the data sheet; the foam must have cooled."
+    if repair.exceeds_max_depth and view.max_depth_mm is not None:
+        text += f" Some of it would exceed {words.depth(view.max_depth_mm)}, the limit entered: ask before spraying."
+    return [Sentence(text, frozenset(bay.key for bay in (*short, *spots, *again)))]
+
+
+def is_short_low_spot(bay: BayResult) -> bool:
+    """True where a bay is short and a low spot was found in it."""
+    return bay.low_spot_mm is not None and "short" in (bay.lowest_depth, bay.vapour)
 
 
 def _reading_steps(view: SurfaceView) -> list[Sentence]:

@@ -3,14 +3,13 @@
 from collections.abc import Callable
 
 from fieldapp.reckoning.inputs import CountedBay
-from fieldapp.reckoning.results import BayResult
 from fieldapp.reckoning.vapour import vapour_class
 from fieldapp.reckoning.wording import count
 from fieldapp.records.record import Record
 from fieldapp.records.repairs import DeficiencyHistory, deficiency_histories
 from fieldapp.report.charts import depth_chart, strip_chart
 from fieldapp.report.model import Part, Photo, Section, Sentence, Table
-from fieldapp.report.sentences import surface_sentence
+from fieldapp.report.sentences import is_short_low_spot, surface_sentence
 from fieldapp.report.terms import ASSEMBLIES, BASES, BROKE, CHOSEN, SORTS, WHERE, check_name, ends
 from fieldapp.report.view import JobView, SurfaceView
 
@@ -173,7 +172,7 @@ def _density(_job: JobView, view: SurfaceView) -> Part | None:
             core.label,
             next((bay.label for bay in view.result.bays if bay.key == core.bay), ""),
             words.density_held(core.kg_m3, low, high),
-            "" if core.plus_minus_kg_m3 is None else f"± {words.density(core.plus_minus_kg_m3)}",
+            "" if core.plus_minus_kg_m3 is None else words.plus_minus(core.plus_minus_kg_m3),
             {"with skin": "with skin: not held against the limits of core density", "no limits": "no limits given"}.get(
                 core.word, "a limit lies within the plus-minus: unproven" if core.word == "unproven" else core.word
             ),
@@ -200,7 +199,7 @@ def _pulls(job: JobView, view: SurfaceView) -> Part | None:
 
 def _touch_up(_job: JobView, view: SurfaceView) -> Part | None:
     words, repair = view.words, view.result.touch_up
-    bays = [bay for bay in view.result.bays if bay.touch_up.volume_m3 or _short_low_spot(view, bay)]
+    bays = [bay for bay in view.result.bays if bay.touch_up.volume_m3 or is_short_low_spot(bay)]
     if not bays and not repair.volume_m3:
         return None
     bays.sort(key=lambda bay: -(bay.touch_up.volume_m3 or 0.0))
@@ -227,10 +226,6 @@ def _touch_up(_job: JobView, view: SurfaceView) -> Part | None:
         )
     table = Table(head, rows, (0.14, 0.18, 0.18, 0.18, 0.12, 0.2), RIGHT({1, 2, 3, 4})) if rows else None
     return Part("Touch-up, bay by bay", tuple(prose), table)
-
-
-def _short_low_spot(view: SurfaceView, bay: BayResult) -> bool:
-    return bay.low_spot_mm is not None and "short" in (bay.lowest_depth, bay.vapour)
 
 
 def _sample(_job: JobView, view: SurfaceView) -> Part | None:

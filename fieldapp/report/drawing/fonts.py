@@ -49,7 +49,7 @@ def glyphs(name: str) -> frozenset[int]:
 
 def _static_weight(weight: int) -> Path:
     made_from = f"{version('fontpkg-source-sans-3')}-{version('fonttools')}"
-    path = cache_folder() / f"source-sans-3-{made_from}-{weight}.ttf"
+    path = cache_folder() / f"source-sans-3-{made_from}-{weight}-2.ttf"
     if path.exists():
         return path
     from fontTools import subset  # noqa: PLC0415 (a second's import, needed once on a machine)
@@ -66,6 +66,10 @@ def _static_weight(weight: int) -> Path:
     subsetter.populate(unicodes=font.getBestCmap())
     subsetter.subset(font)
     static = instancer.instantiateVariableFont(font, {"wght": weight}, inplace=True, optimize=False)
+    # Two weights under one name would be taken for one font by PDF libraries.
+    for record in static["name"].names:
+        if record.nameID in (1, 4, 6, 16):
+            record.string = f"SourceSans3-{weight}"
     # Written aside and renamed, so that a second process never reads half a font.
     handle, aside = tempfile.mkstemp(dir=path.parent, suffix=".ttf")
     os.close(handle)

@@ -244,12 +244,18 @@ def _page_one(report: Report) -> list[Flowable]:
         story += [Beside(Paragraph(prose(alarm.text, BOLD), ALARM), "bar"), Spacer(0, 5)]
     for sentence in report.covering:
         story.append(Beside(Paragraph(prose(sentence.text), COVER), "mark", sentence, 17.0))
-    told = " ".join(sentence.text for sentence in report.answer)
-    story += [Spacer(0, 8), Beside(Paragraph(prose(told, BOLD), LEAD), "bar", None, 14.0), Spacer(0, 9)]
+    # The answer is what is read first; the longer it is, the smaller it can be set and still be.
+    length = sum(len(sentence.text) for sentence in report.answer)
+    size = 12.4 if length < 320 else 11.2 if length < 560 else 10.2
+    style = LEAD.clone("answer", fontSize=size, leading=size * 1.34)
+    told = "<br/>".join(prose(sentence.text, BOLD) for sentence in report.answer)
+    story += [Spacer(0, 8), Beside(Paragraph(told, style), "bar", None, 14.0), Spacer(0, 9)]
     if report.table:
         story += [SummaryFlow(report.table_head, report.table), Spacer(0, 3)]
     if report.to_do:
-        steps = LEAD.clone("steps", fontSize=9.2, leading=12.2, fontName=REGULAR)
+        steps = LEAD.clone(
+            "steps", fontSize=9.2, leading=12.0, fontName=REGULAR, bulletFontName=BOLD, bulletFontSize=9.2
+        )
         numbered: list[Flowable] = [
             Paragraph(
                 prose(sentence.text),

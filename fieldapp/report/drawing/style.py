@@ -29,9 +29,16 @@ def shade(step: int) -> Color:
     return Color(red / 255, green / 255, blue / 255)
 
 
+def _luminance(colour: Color) -> float:
+    """Relative luminance (WCAG 2.2)."""
+    parts = [part / 12.92 if part <= 0.04045 else ((part + 0.055) / 1.055) ** 2.4 for part in colour.rgb()]
+    return 0.2126 * parts[0] + 0.7152 * parts[1] + 0.0722 * parts[2]
+
+
 def is_dark(step: int) -> bool:
-    """True where text on that shade must be white."""
-    return step >= SHADES // 2
+    """True where white text stands out more than ink on that shade."""
+    ground = _luminance(shade(step)) + 0.05
+    return 1.05 / ground > ground / (_luminance(INK) + 0.05)
 
 
 MARGIN: Final = 46.0

@@ -16,6 +16,7 @@ from fieldapp.report.model import SurfaceLine, Table
 SIZE: Final = 8.2
 LEADING: Final = 10.2
 PAD: Final = 5.0
+RIGHT_PAD: Final = 14.0
 COLUMN_GAP: Final = 18.0
 
 
@@ -54,7 +55,7 @@ class TableFlow(Flowable):
         mark = self.table.marks.get(number)
         cells = []
         for column, text in enumerate(row):
-            room = self.block * self.table.widths[column] - PAD
+            room = self.block * self.table.widths[column] - (RIGHT_PAD if column in self.table.right else PAD)
             if mark is not None and column == 1:
                 room -= MARK_WIDTH
             cells.append(lines(typeset(text), REGULAR, self.size, room))
@@ -113,7 +114,7 @@ class TableFlow(Flowable):
             for column, title in enumerate(table.head):
                 text = typeset(title, BOLD)
                 if column in table.right:
-                    canvas.drawRightString(starts[column + 1] - PAD, y - self.leading, text)
+                    canvas.drawRightString(starts[column + 1] - RIGHT_PAD, y - self.leading, text)
                 else:
                     canvas.drawString(starts[column], y - self.leading, text)
             y -= self.head
@@ -136,7 +137,7 @@ class TableFlow(Flowable):
                     if not line:
                         continue
                     if column in table.right:
-                        x = starts[column + 1] - PAD - width(line, REGULAR, self.size)
+                        x = starts[column + 1] - RIGHT_PAD - width(line, REGULAR, self.size)
                     pen.setTextOrigin(x, base - number * self.leading)
                     pen.textOut(line)
             y -= row.height
