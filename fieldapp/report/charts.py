@@ -135,12 +135,16 @@ def strip_chart(view: SurfaceView) -> StripChart | None:
     """Lowest, mean and highest depth by bay against the specified and the vapour depth; None where nothing was read."""
     if view.result.depth_mm.max is None:
         return None
-    spec_mm = view.counted.spec.depth_mm
-    vapour_mm = view.vapour_depth_mm
-    vapour = None
-    if vapour_mm is not None and abs(vapour_mm - spec_mm) > DEPTH_TOLERANCE_MM:
-        vapour = (vapour_mm, f"{view.words.vapor} depth {view.words.depth(vapour_mm)}")
-    highest = max(view.result.depth_mm.max, spec_mm, vapour_mm or 0.0)
+    words, spec = view.words, view.counted.spec
+    lines = [(spec.depth_mm, f"specified {words.depth(spec.depth_mm)}")]
+    if spec.basis == "average-with-floor" and spec.floor_mm is not None:
+        lines.append((spec.floor_mm, f"floor {words.depth(spec.floor_mm)}"))
+    if (vapour_mm := view.vapour_depth_mm) is not None:
+        lines.append((vapour_mm, f"{words.vapor} depth {words.depth(vapour_mm)}"))
+    apart = [
+        line for number, line in enumerate(lines) if all(abs(line[0] - other[0]) > 0.5 for other in lines[:number])
+    ]
+    highest = max(view.result.depth_mm.max, *(depth for depth, _ in apart))
     step = MM_PER_INCH if view.words.is_ip else 25.0
     while highest / step > 7:
         step *= 2
@@ -152,8 +156,7 @@ def strip_chart(view: SurfaceView) -> StripChart | None:
             Strip(bay.label, _low_reading(bay), result.mean_mm, result.max_mm, result.low_spot_mm)
             for bay, result in pairs
         ),
-        specified=(spec_mm, f"specified {view.words.depth(spec_mm)}"),
-        vapour=vapour,
+        lines=tuple(apart),
         top_mm=top,
         ticks=ticks,
     )

@@ -87,11 +87,12 @@ class Strip:
 
 @dataclass(frozen=True, slots=True)
 class StripChart:
-    """Lowest, mean and highest depth of each bay against horizontal lines; (depth_mm, text) for each line."""
+    """Lowest, mean and highest depth of each bay against horizontal lines: the specified depth first, then a floor and the
+    vapour depth where they differ from it; (depth_mm, text) for each line.
+    """
 
     strips: tuple[Strip, ...]
-    specified: tuple[float, str]
-    vapour: tuple[float, str] | None
+    lines: tuple[tuple[float, str], ...]
     top_mm: float
     ticks: tuple[tuple[float, str], ...]
 

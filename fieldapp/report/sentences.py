@@ -273,7 +273,7 @@ def _foam_steps(view: SurfaceView) -> list[Sentence]:
             amount += f", order {words.foam(repair.order_m3)}"
         where = view.named(short) if short else "over the area read"
         deepest = words.depth(repair.deepest_missing_mm or 0.0)
-        said.append(f"add up to {deepest} in {where}: {amount}, {passes_text(view, repair.passes)}")
+        said.append(f"{where}: add up to {deepest}, {passes_text(view, repair.passes)}; {amount}")
     spots = [bay for bay in view.result.bays if is_short_low_spot(bay) and not bay.touch_up.volume_m3]
     if spots:
         each = listed([f"bay {bay.label} ({words.depth(bay.low_spot_mm or 0.0)})" for bay in spots])
@@ -286,7 +286,7 @@ def _foam_steps(view: SurfaceView) -> list[Sentence]:
         said.append(f"read {which} again before anything covers {which}{order}")
     if not said:
         return []
-    text = f"{view.name}: {'; '.join(said)}."
+    text = f"{view.name}, {'; '.join(said)}." if short else f"{view.name}: {'; '.join(said)}."
     if foam is not None and foam.pass_wait_min and (repair.passes or 0) > 1:
         text += f" Wait {foam.pass_wait_min:g} min between passes by the data sheet; the foam must have cooled."
     if repair.exceeds_max_depth and view.max_depth_mm is not None:

@@ -97,7 +97,7 @@ def _figures(job: JobView, view: SurfaceView) -> Part:
     if result.u_w_m2k is not None:
         rows.append((_framing_name(view), words.u(result.u_w_m2k)))
     rows.extend(_setting(view))
-    return Part("Figures", table=Table(("", ""), tuple(rows), (0.42, 0.58)))
+    return Part("Figures", table=Table(("", ""), tuple(rows), (0.52, 0.48), columns=2))
 
 
 def _framing_name(view: SurfaceView) -> str:
@@ -234,9 +234,8 @@ def _sample(_job: JobView, view: SurfaceView) -> Part | None:
         return None
     told: list[str] = []
     if result.sampling.short_bays_at_most is None:
-        picked = CHOSEN[view.counted.chosen]
         told.append(
-            f"{result.bays_read} of {count(result.bays_total, 'bay')} were read and {picked}: such a sample says nothing "
+            f"{result.bays_read} of {count(result.bays_total, 'bay')} were read, and not as a random sample: they say nothing "
             "of the bays that were not read."
         )
     elif result.bays_read < result.bays_total:

@@ -29,6 +29,9 @@ TALLEST: Final = 210.0
 WIDEST_BAY: Final = 58.0
 KEY_WIDTH: Final = 150.0
 
+#: Line of the specified depth, then those of floor and vapour depth.
+DASHES: Final = (((), 0), ((4.0, 2.0), 0), ((1.2, 1.6), 0))
+
 #: x, y of the lower left corner, width, height. [pt]
 Box = tuple[float, float, float, float]
 
@@ -381,7 +384,7 @@ class StripChartFlow(Flowable):
             canvas.drawRightString(left - 4.0, self._y(depth) - 2.2, typeset(text))
         step = (right - left) / len(chart.strips)
         bar = min(9.0, step * 0.62)
-        spec = chart.specified[0]
+        spec = chart.lines[0][0]
         solid, outline, hatches = canvas.beginPath(), canvas.beginPath(), canvas.beginPath()
         notches, spots = canvas.beginPath(), canvas.beginPath()
         for number, strip in enumerate(chart.strips):
@@ -423,16 +426,10 @@ class StripChartFlow(Flowable):
         canvas.setFillColor(ACCENT)
         canvas.setFont(BOLD, 6.8)
         canvas.setLineWidth(1.2)
-        canvas.line(left, self._y(chart.specified[0]), right, self._y(chart.specified[0]))
-        if chart.vapour is not None:
-            canvas.setDash(3.0, 2.0)
-            canvas.line(left, self._y(chart.vapour[0]), right, self._y(chart.vapour[0]))
-            canvas.setDash()
-        y = self.height - 7.0
-        x = left
-        for text, dash in ((chart.specified[1], False), *([(chart.vapour[1], True)] if chart.vapour else [])):
-            if dash:
-                canvas.setDash(3.0, 2.0)
+        x, y = left, self.height - 7.0
+        for number, (depth, text) in enumerate(chart.lines):
+            canvas.setDash(*DASHES[number])
+            canvas.line(left, self._y(depth), right, self._y(depth))
             canvas.line(x, y + 2.2, x + 13.0, y + 2.2)
             canvas.setDash()
             shown = typeset(text, BOLD)

@@ -5,7 +5,7 @@ from typing import Any
 from fieldapp.reckoning.results import Result
 from fieldapp.report.drawing.style import ACCENT, INK, PAPER
 
-WIDTH = 12.0
+WIDTH = 13.5
 
 
 def draw_mark(canvas: Any, x: float, y: float, result: Result, size: float = 9.0) -> None:
