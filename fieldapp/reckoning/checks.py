@@ -100,11 +100,13 @@ def mean_depth(seen: Seen, words: Wording) -> Check | None:
     if spec.basis == "minimum":
         return None
     asked = f"mean {words.depth(spec.depth_mm)}"
+    if spec.basis is None:
+        asked = f"{words.depth(spec.depth_mm)}; {NO_BASIS}"
     if mean is None:
         return _check("mean-depth", "unproven", asked, NOTHING_READ)
     found = f"mean {words.depth_held(mean, spec.depth_mm)}"
     if spec.basis is None:
-        return _check("mean-depth", "unproven", f"{words.depth(spec.depth_mm)}; {NO_BASIS}", found)
+        return _check("mean-depth", "unproven", asked, found)
     return _check("mean-depth", _held(depth_meets(mean, spec.depth_mm)), asked, found)
 
 

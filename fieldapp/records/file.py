@@ -84,7 +84,7 @@ def _read_line(text: bytes) -> Record | Refusal:
     if len(text) > LONGEST_LINE:
         return Refusal("", "record", f"{len(text)} bytes", f"at most {LONGEST_LINE} bytes")
     try:
-        value: Any = json.loads(text, object_pairs_hook=_no_name_twice)
+        value: Any = _DECODER.decode(text.decode("utf-8"))
     except UnicodeDecodeError:
         return Refusal("", "record", "bytes that are not UTF-8", "a line of UTF-8 text")
     except RecursionError:
@@ -101,6 +101,9 @@ def _no_name_twice(pairs: list[tuple[str, Any]]) -> dict[str, Any]:
         name = next(name for name, times in Counter(name for name, _ in pairs).items() if times > 1)
         raise ValueError(f"the name {name!r} stands twice")
     return found
+
+
+_DECODER: Final = json.JSONDecoder(object_pairs_hook=_no_name_twice)
 
 
 def _which_job(records: list[Record], refused: list[Refusal]) -> str:

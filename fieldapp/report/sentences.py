@@ -312,7 +312,7 @@ def _reading_steps(view: SurfaceView) -> list[Sentence]:
     held = sum(core.word != "with skin" for core in view.result.density.each)
     lacking = view.counted.spec.cores_min - held
     if lacking > 0:
-        steps.append(Sentence(f"{view.name}: weigh {count(lacking, 'more core')}, without skin."))
+        steps.append(Sentence(f"{view.name}: weigh {count(lacking, 'more core' if held else 'core')}, without skin."))
     return steps
 
 
