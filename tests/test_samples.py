@@ -3,6 +3,7 @@
 import json
 from collections import Counter
 from hashlib import sha256
+from itertools import pairwise
 
 import pytest
 from PIL import Image
@@ -87,5 +88,5 @@ def test_depths_lie_as_foam_does_neighbours_are_more_alike_than_strangers(name: 
             continue
         middle = sum(means) / len(means)
         spread = sum((mean - middle) ** 2 for mean in means) / (len(means) - 1)
-        steps = sum((a - b) ** 2 for a, b in zip(means, means[1:], strict=False)) / (2 * (len(means) - 1))
+        steps = sum((a - b) ** 2 for a, b in pairwise(means)) / (2 * (len(means) - 1))
         assert steps < spread
