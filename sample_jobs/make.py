@@ -178,8 +178,8 @@ def tamarack_yard() -> Writer:
         14400.0,
         surfaces=[slope, rim, knee],
         foam=a,
-        started="2026-05-04T08:55:00.000Z",
-        finished="2026-05-04T12:40:00.000Z",
+        started="2026-05-03T13:45:00.000Z",
+        finished="2026-05-03T17:30:00.000Z",
         lot_a="A-2604-17",
         lot_b="B-2604-09",
         drum_c=24.0,
@@ -233,7 +233,7 @@ def tamarack_yard() -> Writer:
     )
     miskeyed = job.reading(slope_keys[7], 2, 0, 14.5 * INCH)
     job.write("withdrawal", 4.0, record=miskeyed, reason="mis-keyed")
-    job.reading(slope_keys[12], 1, 0, read[12, 1, 0][1] + 0.9 * INCH)
+    job.reading(slope_keys[8], 1, 0, read[8, 1, 0][1] + 0.9 * INCH)
     job.write(
         "low-spot",
         bay=slope_keys[23],

@@ -63,7 +63,7 @@ class Writer:
         """The job's id, and the office's desk that sets it up."""
         self.job = stable_uuid(f"{self.name} job", self.start)
         self.inspector = Device("d-7f3a", "demo-inspector-a", self.start + timedelta(hours=26))
-        self.crew = Device("d-21c8", "demo-applicator-2", self.start + timedelta(hours=20))
+        self.crew = Device("d-21c8", "demo-applicator-2", self.start + timedelta(hours=1))
         self.device = Device("d-0d11", "demo-office", self.start)
 
     def new_key(self, what: str) -> str:

@@ -167,6 +167,7 @@ class SurfaceResult:
     points_read_again: int
     area_m2: float
     area_read_m2: float
+    read_share: float
     depth_mm: DepthFigures
     rsi: ResistanceFigures
     u_w_m2k: float | None

@@ -91,6 +91,7 @@ def reckon_surface(surface: CountedSurface, climate_zone: str | None, wording: W
         points_read_again=sum(bay.read_again for bay in surface.bays),
         area_m2=sums.area_laid_out_m2(surface),
         area_read_m2=sums.area_m2,
+        read_share=seen.read_share,
         depth_mm=seen.depth_mm,
         rsi=seen.rsi,
         u_w_m2k=_framed_u(surface, sums, figures, seen.rsi.delivered),

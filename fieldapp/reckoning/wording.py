@@ -102,6 +102,11 @@ class Wording:
         """A computed depth or difference to hundredths of an inch or tenths of a millimetre."""
         return f"{half_up(depth_mm / MM_PER_INCH, 2)} in" if self.is_ip else f"{half_up(depth_mm, 1)} mm"
 
+    def signed_depth(self, depth_mm: float) -> str:
+        """A difference of depths with its sign: '+0.02 in' or '−1.2 mm'."""
+        text = self.fine_depth(abs(depth_mm))
+        return f"{'−' if depth_mm < 0.0 else '+'}{text}"
+
     def depth_held(self, depth_mm: float, limit_mm: float) -> str:
         """A depth held against a least depth; never written equal to a limit that it misses."""
         text = self.depth(depth_mm)

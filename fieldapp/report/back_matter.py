@@ -242,7 +242,7 @@ def appendix_section(job: JobView) -> Section:
                 factor = view.counts[bay.key].factor
                 found = BLOCKED[body["blocked"]][1] if depth is None else view.words.depth_number(depth * factor)
                 local = job.local(record.at)
-                by = record.by if body["purpose"] == "inspection" else f"{record.by}, self-check"
+                by = record.by if body["purpose"] == "inspection" else f"{record.by} (s)"
                 rows.append(
                     (
                         bay.label,
@@ -255,10 +255,13 @@ def appendix_section(job: JobView) -> Section:
                     )
                 )
         if rows:
-            head = ("Bay", "Point", view.words.depth_unit, "Local time", "By", "Rnd", "Ph.")
-            widths = (0.11, 0.09, 0.16, 0.25, 0.27, 0.07, 0.05)
+            head = ("Bay", "Point", view.words.depth_unit, "Local time", "By", "Round", "Photo")
+            widths = (0.1, 0.09, 0.14, 0.25, 0.26, 0.08, 0.08)
             parts.append(Part(view.name, table=Table(head, tuple(rows), widths, frozenset({2}), columns=2)))
-    lead = "Points are row.column, row 1 at the top or ridge, column 1 at the left. Withdrawn readings are told under method."
+    lead = (
+        "Points are row.column, row 1 at the top or ridge, column 1 at the left; (s): self-check. Withdrawn readings are told "
+        "under method."
+    )
     if not parts:
         lead = "Nothing was read."
     return Section("appendix", "Appendix: every reading", "", (Part("", (Sentence(lead),)), *parts))

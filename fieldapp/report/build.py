@@ -11,7 +11,7 @@ from fieldapp.records.file import Loaded
 from fieldapp.report.back_matter import appendix_section, cautions_section, method_section, other_photos
 from fieldapp.report.charts import touch_up_chart
 from fieldapp.report.model import CrewSheet, Report, Section, SurfaceLine, Table
-from fieldapp.report.sentences import alarms, answer, covering, to_do
+from fieldapp.report.sentences import alarms, answer, covering, of_read, to_do
 from fieldapp.report.surface_section import surface_section
 from fieldapp.report.terms import BASES
 from fieldapp.report.view import JobView, SurfaceView
@@ -78,7 +78,7 @@ def _facts(view: JobView) -> tuple[tuple[str, str], ...]:
     readers = sorted({record.by for record in readings})
     lots = sorted(
         {
-            f"A {record.body.get('lot_a') or 'not noted'}, B {record.body.get('lot_b') or 'not noted'}"
+            f"A-side {record.body.get('lot_a') or 'not noted'}, B-side {record.body.get('lot_b') or 'not noted'}"
             for record in view.job.of("spray")
         }
     )
@@ -118,9 +118,7 @@ def _line(view: JobView, surface: SurfaceView) -> SurfaceLine:
         (f"{result.bays_read} of {result.bays_total}", "bays"),
         blank if depth.min is None else (words.depth_held(depth.min, limit), ""),
         blank if depth.mean is None else (words.depth_held(depth.mean, spec.depth_mm), ""),
-        blank
-        if under.area_share is None
-        else (words.percent(under.area_share), _of_read(words.percent(result.area_read_m2 / result.area_m2))),
+        blank if under.area_share is None else (words.percent(under.area_share), of_read(surface)),
         blank
         if result.rsi.delivered is None
         else (words.r_held(result.rsi.delivered, spec.rsi or 0.0), f"asked {words.r(spec.rsi)}" if spec.rsi else ""),
@@ -137,10 +135,6 @@ def _line(view: JobView, surface: SurfaceView) -> SurfaceLine:
         word=word if result.result == "short" else result.result,
         cells=tuple(cells),
     )
-
-
-def _of_read(share: str) -> str:
-    return "of all, read" if share == "100 %" else f"of {share} read"
 
 
 def _vapour_cell(surface: SurfaceView) -> tuple[str, str]:

@@ -11,6 +11,7 @@ from fieldapp.report.view import JobView, SurfaceView
 
 #: Of the points under depth, so many must lie in one row or at the edges before a sentence says where.
 MOSTLY = 0.7
+RESULTS: tuple[Result, ...] = ("meets", "short", "unproven")
 
 
 def capital(text: str) -> str:
@@ -20,6 +21,18 @@ def capital(text: str) -> str:
 
 def _is_are(number: int) -> str:
     return "is" if number == 1 else "are"
+
+
+def of_read(view: SurfaceView) -> str:
+    """'of all' or 'of the 60 % read': never a share without how much was read."""
+    share = view.words.percent(view.result.read_share)
+    return "of the area, all read" if share == "100 %" else f"of the {share} read"
+
+
+def of_bays(view: SurfaceView) -> str:
+    """'of its 28 bays', or 'of the 40 bays read (of 160)'."""
+    read, total = view.result.bays_read, view.result.bays_total
+    return f"of its {count(total, 'bay')}" if read == total else f"of the {count(read, 'bay')} read (of {total})"
 
 
 def where_thin(view: SurfaceView) -> str:
@@ -58,7 +71,7 @@ def surface_clauses(view: SurfaceView) -> list[tuple[str, list[BayResult]]]:
         if result.bays_total == 1:
             found.append((f"it is {lowest} deep at its thinnest, under the {limit} {asked}", low))
         else:
-            text = f"{len(low)} of its {count(result.bays_total, 'bay')} {_is_are(len(low))} under the {limit} {asked}"
+            text = f"{len(low)} {of_bays(view)} {_is_are(len(low))} under the {limit} {asked}"
             found.append((f"{text}{where_thin(view)}, the lowest {lowest} (bay {worst.label})", low))
     if view.is_short("mean-depth") and result.depth_mm.mean is not None:
         mean = words.depth_held(result.depth_mm.mean, spec.depth_mm)
@@ -143,6 +156,9 @@ def surface_sentence(view: SurfaceView) -> Sentence:
         return Sentence(f"{view.name} is unproven: {'; '.join(unproven_reasons(view))}.", result="unproven")
     clauses = surface_clauses(view)
     text = f"{view.name} is short: {'; '.join(clause for clause, _ in clauses)}."
+    most = view.result.sampling.short_bays_at_most
+    if most is not None and view.result.bays_read < view.result.bays_total:
+        text += f" By this sample up to {most} of {view.result.bays_total} bays can be short."
     if view.unread():
         text += f" Besides, {view.named(view.unread())} {'was' if len(view.unread()) == 1 else 'were'} not read."
     repair = view.result.touch_up
@@ -160,7 +176,7 @@ def answer(view: JobView) -> tuple[Sentence, ...]:
     if not view.surfaces:
         return (Sentence("No surface is laid out, so nothing is proven.", result="unproven"),)
     short = sorted(by_result["short"], key=lambda s: -(s.result.touch_up.volume_m3 or 0.0))
-    told = [surface_sentence(surface) for surface in short[:3]]
+    told = _places(view) + [surface_sentence(surface) for surface in short[:3]]
     if short[3:]:
         names = listed([surface.name for surface in short[3:]])
         told.append(Sentence(f"{names} {_is_are(len(short) - 3)} short too; each is told below.", result="short"))
@@ -184,6 +200,20 @@ def answer(view: JobView) -> tuple[Sentence, ...]:
         verb = "meets" if len(meeting) == 1 else "meet"
         told.append(Sentence(f"{names} {verb} everything asked, by these readings.", result="meets"))
     return tuple(told)
+
+
+def _places(view: JobView) -> list[Sentence]:
+    """How many places meet, where there are several."""
+    places = [place.result for place in view.result.places]
+    if len(places) < 2:
+        return []
+    words = {"meets": "meets" if places.count("meets") == 1 else "meet"}
+    counts = [
+        f"{places.count(result)} {words.get(result, f'{_is_are(places.count(result))} {result}')}"
+        for result in RESULTS
+        if places.count(result)
+    ]
+    return [Sentence(f"Of {len(places)} places {listed(counts)}.", result=view.result.result)]
 
 
 def alarms(view: JobView) -> tuple[Sentence, ...]:
@@ -230,7 +260,7 @@ def _cover_words(view: SurfaceView) -> list[str]:
     told: list[str] = []
     if depth:
         bays = {bay.key for part in ("lowest_depth", "vapour") for bay in view.short(part)}
-        told.append(f"short in {len(bays)} of {count(view.result.bays_total, 'bay')}" if bays else "short in depth")
+        told.append(f"short in {len(bays)} {of_bays(view)}" if bays else "short in depth")
     if "delivered-r" in found and not depth:
         told.append("short in R")
     if deep := view.short("over"):
@@ -271,7 +301,7 @@ def _foam_steps(view: SurfaceView) -> list[Sentence]:
         amount = f"{words.foam(repair.volume_m3)} missing"
         if repair.order_m3 and repair.order_m3 > repair.volume_m3:
             amount += f", order {words.foam(repair.order_m3)}"
-        where = view.named(short) if short else "over the area read"
+        where = view.named(short) if short else "over the area read, thin bays first"
         deepest = words.depth(repair.deepest_missing_mm or 0.0)
         said.append(f"{where}: add up to {deepest}, {passes_text(view, repair.passes)}; {amount}")
     spots = [bay for bay in view.result.bays if is_short_low_spot(bay) and not bay.touch_up.volume_m3]
@@ -286,7 +316,7 @@ def _foam_steps(view: SurfaceView) -> list[Sentence]:
         said.append(f"read {which} again before anything covers {which}{order}")
     if not said:
         return []
-    text = f"{view.name}, {'; '.join(said)}." if short else f"{view.name}: {'; '.join(said)}."
+    text = f"{view.name}, {'; '.join(said)}." if repair.volume_m3 else f"{view.name}: {'; '.join(said)}."
     if foam is not None and foam.pass_wait_min and (repair.passes or 0) > 1:
         text += f" Wait {foam.pass_wait_min:g} min between passes by the data sheet; the foam must have cooled."
     if repair.exceeds_max_depth and view.max_depth_mm is not None:

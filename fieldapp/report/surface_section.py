@@ -9,7 +9,7 @@ from fieldapp.records.record import Record
 from fieldapp.records.repairs import DeficiencyHistory, deficiency_histories
 from fieldapp.report.charts import depth_chart, strip_chart
 from fieldapp.report.model import Part, Photo, Section, Sentence, Table
-from fieldapp.report.sentences import is_short_low_spot, surface_sentence
+from fieldapp.report.sentences import is_short_low_spot, of_read, surface_sentence
 from fieldapp.report.terms import ASSEMBLIES, BASES, BROKE, CHOSEN, SORTS, WHERE, check_name, ends
 from fieldapp.report.view import JobView, SurfaceView
 
@@ -80,10 +80,8 @@ def _figures(job: JobView, view: SurfaceView) -> Part:
     if depth.sd is not None:
         rows.append(("Standard deviation of the readings", words.fine_depth(depth.sd)))
     if under.area_share is not None and under.deep_area_share is not None and under.missing_m3 is not None:
-        read = words.percent(result.area_read_m2 / result.area_m2)
-        rows.append(
-            (f"Area under {words.depth(spec.depth_mm)}", f"{words.percent(under.area_share)} of the {read} read")
-        )
+        share = f"{words.percent(under.area_share)} {of_read(view)}"
+        rows.append((f"Area under {words.depth(spec.depth_mm)}", share))
         rows.append(("Area under 70 % of that", words.percent(under.deep_area_share)))
         rows.append(("Foam missing to that depth", words.foam(under.missing_m3)))
     if rsi.delivered is not None and rsi.nominal is not None and rsi.uneven_loss is not None:
@@ -298,8 +296,8 @@ def _self_check(job: JobView, view: SurfaceView) -> Part | None:
     words = view.words
     text = (
         f"At {agreement.pairs} points of this job the applicator's self-check and the inspection were read in the same "
-        f"round. Inspection less self-check is {words.fine_depth(agreement.bias_mm)} on average; 95 % of such differences "
-        f"lie between {words.fine_depth(agreement.lower_mm)} and {words.fine_depth(agreement.upper_mm)} (limits of "
+        f"round. Inspection less self-check is {words.signed_depth(agreement.bias_mm)} on average; 95 % of such differences "
+        f"lie between {words.signed_depth(agreement.lower_mm)} and {words.signed_depth(agreement.upper_mm)} (limits of "
         "agreement)."
     )
     return Part("Self-check against inspection", (Sentence(text),))

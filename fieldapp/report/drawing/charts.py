@@ -25,7 +25,7 @@ LABEL: Final = 6.4
 LEAST_NUMBER: Final = 4.6
 GUTTER: Final = 13.0
 FRAME: Final = 1.4
-TALLEST: Final = 210.0
+TALLEST: Final = 176.0
 WIDEST_BAY: Final = 58.0
 KEY_WIDTH: Final = 150.0
 
@@ -170,6 +170,25 @@ class _Pen:
             self.canvas.drawText(text)
 
 
+def _bands(bays: tuple[ChartBay, ...], room: float, scale: float) -> list[list[ChartBay]]:
+    """Bays in bands that fit the room, each band about as long as the others."""
+    widths = [bay.width_mm * scale + FRAME for bay in bays]
+    number = max(1, -int(-sum(widths) // (room + FRAME)))
+    while True:
+        goal = sum(widths) / number
+        bands: list[list[ChartBay]] = [[]]
+        used = start = 0.0
+        for bay, wide in zip(bays, widths, strict=True):
+            if bands[-1] and (used - start + wide > room + FRAME or used + wide / 2 > goal * len(bands) + 0.01):
+                bands.append([])
+                start = used
+            bands[-1].append(bay)
+            used += wide
+        if len(bands) <= number + 1:
+            return bands
+        number += 1
+
+
 class DepthChartFlow(Flowable):
     """A depth chart, in as many bands of bays as the width asks."""
 
@@ -226,15 +245,7 @@ class DepthChartFlow(Flowable):
         self.size = NUMBER
         if narrowest * scale < widest:
             self.size = max(LEAST_NUMBER, NUMBER * narrowest * scale / widest)
-        self.bands: list[list[ChartBay]] = [[]]
-        used = 0.0
-        for bay in bays:
-            wide = bay.width_mm * scale + FRAME
-            if used + wide > room + 0.01 and self.bands[-1]:
-                self.bands.append([])
-                used = 0.0
-            self.bands[-1].append(bay)
-            used += wide
+        self.bands = _bands(bays, room, scale)
         self.cells_height = tallest_mm * upright_scale
         self.spots = 10.0 if any(bay.low_spot for bay in bays) else 0.0
         self.band_height = self.cells_height + self.spots + LABEL + 9.0
@@ -354,7 +365,7 @@ class DepthChartFlow(Flowable):
 class StripChartFlow(Flowable):
     """Lowest to highest depth of each bay as an upright bar, its mean as a notch, against the specified depth."""
 
-    HEIGHT: Final = 96.0
+    HEIGHT: Final = 84.0
     LEFT: Final = 26.0
     RIGHT: Final = 6.0
 

@@ -24,6 +24,11 @@ def draw_mark(canvas: Any, x: float, y: float, result: Result, size: float = 9.0
         canvas.setFillColor(INK)
         height = size * (0.86 if result == "meets" else 0.4)
         canvas.rect(x, y, size, height, stroke=0, fill=1)
+    if result == "meets":
+        # Paper on both sides of the line, or it drowns in the fill.
+        canvas.setStrokeColor(PAPER)
+        canvas.setLineWidth(size * 0.36)
+        canvas.line(x + size * 0.05, line, x + size * 0.95, line)
     canvas.setStrokeColor(ACCENT)
     canvas.setLineWidth(size * 0.13)
     canvas.line(x - size * 0.16, line, x + size * 1.16, line)

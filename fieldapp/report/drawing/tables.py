@@ -154,7 +154,7 @@ class TableFlow(Flowable):
 class SummaryFlow(Flowable):
     """The table of page one: a surface a row, a main text and a small one below it in each cell."""
 
-    WIDTHS: Final = (0.185, 0.105, 0.1, 0.075, 0.085, 0.085, 0.085, 0.1, 0.09, 0.09)
+    WIDTHS: Final = (0.17, 0.122, 0.098, 0.075, 0.085, 0.085, 0.085, 0.1, 0.09, 0.09)
     MAIN: Final = 8.8
     BELOW: Final = 7.0
 
