@@ -12,7 +12,7 @@ from fieldapp.report.back_matter import appendix_section, cautions_section, meth
 from fieldapp.report.charts import touch_up_chart
 from fieldapp.report.model import CrewSheet, Report, Section, SurfaceLine, Table
 from fieldapp.report.sentences import alarms, answer, covering, of_read, to_do
-from fieldapp.report.surface_section import surface_section
+from fieldapp.report.surface_section import surface_section, touch_up_table
 from fieldapp.report.terms import BASES
 from fieldapp.report.view import JobView, SurfaceView
 
@@ -176,6 +176,13 @@ def _not_said(view: JobView) -> tuple[str, ...]:
     return tuple(told)
 
 
+def _wait(surface: SurfaceView) -> str:
+    foam, passes = surface.foam, surface.result.touch_up.passes
+    if passes is not None and passes < 2:
+        return "–"
+    return f"{foam.pass_wait_min:g} min" if foam and foam.pass_wait_min else "by the sheet"
+
+
 def build_crew_sheet(view: JobView) -> CrewSheet:
     """One page for the crew: what to add where."""
     surfaces = []
@@ -185,7 +192,7 @@ def build_crew_sheet(view: JobView) -> CrewSheet:
         repair = surface.result.touch_up
         if not chart.bays and not repair.volume_m3:
             continue
-        words, foam = surface.words, surface.foam
+        words = surface.words
         rows = (
             (
                 words.depth(surface.point_limit_mm)
@@ -195,11 +202,11 @@ def build_crew_sheet(view: JobView) -> CrewSheet:
                 words.foam(repair.volume_m3 or 0.0),
                 words.foam(repair.order_m3 or 0.0),
                 "ask the sheet" if repair.passes is None else str(repair.passes),
-                f"{foam.pass_wait_min:g} min" if foam and foam.pass_wait_min else "by the sheet",
+                _wait(surface),
             ),
         )
         head = ("Bring to", "Deepest to add", "Missing", "To order", "Passes, at least", "Wait between")
-        surfaces.append((surface.name, chart, Table(head, rows, (1 / 6,) * 6)))
+        surfaces.append((surface.name, chart, Table(head, rows, (1 / 6,) * 6), touch_up_table(surface)))
         if repair.exceeds_max_depth and surface.max_depth_mm is not None:
             notes.append(
                 f"{surface.name}: would exceed {words.depth(surface.max_depth_mm)} (limit entered): ask first."

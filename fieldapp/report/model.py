@@ -174,11 +174,13 @@ class Report:
 
 @dataclass(frozen=True, slots=True)
 class CrewSheet:
-    """One page for the crew: what to add where, surface by surface, no prose."""
+    """One page for the crew: what to add where, no prose; for each surface its name, the chart of what each point lacks, the
+    sums, and the same bay by bay.
+    """
 
     title: str
     subtitle: str
-    surfaces: tuple[tuple[str, DepthChart, Table], ...]
+    surfaces: tuple[tuple[str, DepthChart, Table, Table | None], ...]
     notes: tuple[str, ...]
     status: str
     digest: str

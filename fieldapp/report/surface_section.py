@@ -146,15 +146,15 @@ def _vapour(_job: JobView, view: SurfaceView) -> Part | None:
             continue
         marks[number] = bay.vapour
         lowest = "" if bay.min_mm is None else words.depth_held(bay.min_mm, view.vapour_depth_mm or 0.0)
-        perm = "" if bay.permeance_ng is None else words.permeance(bay.permeance_ng)
+        perm = "" if bay.permeance_ng is None else words.permeance(bay.permeance_ng).split(" ", 1)[0]
         retarder = "" if bay.permeance_ng is None else vapour_class(bay.permeance_ng) or "none"
         rows.append((bay.label, bay.vapour, lowest, perm, retarder))
-    head = ("Bay", "Result", "Lowest", "Permeance", "Class")
+    head = ("Bay", "Result", "Lowest", f"Permeance, {words.permeance(1.0).split(' ', 1)[1]}", "Class")
     title = f"{words.vapor.capitalize()} depth, bay by bay"
     prose: tuple[Sentence, ...] = ()
     if view.foam is not None and view.foam.permeability_ng_m is None:
         prose = (Sentence("The foam's permeability is not given, so no permeance is reckoned."),)
-    table = Table(head, tuple(rows), (0.14, 0.24, 0.2, 0.24, 0.18), RIGHT({2, 3}), marks, columns=2)
+    table = Table(head, tuple(rows), (0.12, 0.21, 0.17, 0.36, 0.14), RIGHT({2, 3}), marks, columns=2)
     return Part(title, prose, table)
 
 
@@ -197,9 +197,25 @@ def _pulls(job: JobView, view: SurfaceView) -> Part | None:
 
 def _touch_up(_job: JobView, view: SurfaceView) -> Part | None:
     words, repair = view.words, view.result.touch_up
-    bays = [bay for bay in view.result.bays if bay.touch_up.volume_m3 or is_short_low_spot(bay)]
-    if not bays and not repair.volume_m3:
+    table = touch_up_table(view)
+    if table is None and not repair.volume_m3:
         return None
+    prose: list[Sentence] = []
+    if repair.volume_m3 and repair.order_m3 is not None:
+        mass = f", {words.mass(repair.mass_kg)} at nominal density" if repair.mass_kg else ""
+        prose.append(
+            Sentence(
+                f"In all {words.foam(repair.volume_m3)} are missing{mass}; to order {words.foam(repair.order_m3)}, least "
+                "pass and losses included. It would bring the depth to specification, if read again."
+            )
+        )
+    return Part("Touch-up, bay by bay", tuple(prose), table)
+
+
+def touch_up_table(view: SurfaceView) -> Table | None:
+    """What each bay lacks, the most missing first; None where nothing can be said bay by bay."""
+    words = view.words
+    bays = [bay for bay in view.result.bays if bay.touch_up.volume_m3 or is_short_low_spot(bay)]
     bays.sort(key=lambda bay: -(bay.touch_up.volume_m3 or 0.0))
     rows = tuple(
         (
@@ -213,17 +229,7 @@ def _touch_up(_job: JobView, view: SurfaceView) -> Part | None:
         for bay in bays
     )
     head = ("Bay", "Deepest to add", "Missing", "To order", "Passes", "")
-    prose: list[Sentence] = []
-    if repair.volume_m3 and repair.order_m3 is not None:
-        mass = f", {words.mass(repair.mass_kg)} at nominal density" if repair.mass_kg else ""
-        prose.append(
-            Sentence(
-                f"In all {words.foam(repair.volume_m3)} are missing{mass}; to order {words.foam(repair.order_m3)}, least "
-                "pass and losses included. It would bring the depth to specification, if read again."
-            )
-        )
-    table = Table(head, rows, (0.14, 0.18, 0.18, 0.18, 0.12, 0.2), RIGHT({1, 2, 3, 4})) if rows else None
-    return Part("Touch-up, bay by bay", tuple(prose), table)
+    return Table(head, rows, (0.14, 0.18, 0.18, 0.18, 0.12, 0.2), RIGHT({1, 2, 3, 4})) if rows else None
 
 
 def _sample(_job: JobView, view: SurfaceView) -> Part | None:

@@ -192,11 +192,22 @@ def _bands(bays: tuple[ChartBay, ...], room: float, scale: float) -> list[list[C
 class DepthChartFlow(Flowable):
     """A depth chart, in as many bands of bays as the width asks."""
 
-    def __init__(self, chart: DepthChart, *, with_key: bool = True, tallest: float = TALLEST) -> None:
+    def __init__(
+        self,
+        chart: DepthChart,
+        *,
+        with_key: bool = True,
+        tallest: float = TALLEST,
+        number: float = NUMBER,
+        widest_bay: float = WIDEST_BAY,
+    ) -> None:
         super().__init__()
         self.chart = chart
         self.with_key = with_key
         self.tallest = tallest
+        self.number = number
+        self.label = LABEL + (number - NUMBER)
+        self.widest_bay = widest_bay
 
     def wrap(self, available_width: float, _available_height: float) -> tuple[float, float]:
         """Size of the chart. [pt]"""
@@ -228,27 +239,27 @@ class DepthChartFlow(Flowable):
         texts = {typeset(cell.text) for bay in bays for cell in bay.cells} | {
             typeset(bay.low_spot or "") for bay in bays
         }
-        widest = max((width(text, REGULAR, NUMBER) for text in texts), default=0.0) + 2.4
+        widest = max((width(text, REGULAR, self.number) for text in texts), default=0.0) + 2.4
         narrowest = min(bay.width_mm * min(bay.col_shares) for bay in bays)
         flattest = min(bay.height_mm * min(bay.row_shares) for bay in bays)
         tallest_mm = max(bay.height_mm for bay in bays)
-        # One scale for both directions, so that bays stand to proportion; only where that would be too small to read or too
-        # tall to print are heights stretched or squeezed alike for all bays.
-        scale = max(widest / narrowest, 1e-6)
-        widest_bay = max(bay.width_mm for bay in bays)
-        all_bays = sum(bay.width_mm for bay in bays)
-        scale = max(scale, min((room - FRAME * len(bays)) / all_bays, WIDEST_BAY / widest_bay))
-        scale = min(scale, room / widest_bay)
-        upright_scale = max(scale, (NUMBER + 2.2) / flattest)
+        widest_mm = max(bay.width_mm for bay in bays)
+        # One scale for both directions, so that bays stand to proportion: large enough for the numbers, then as large as fills
+        # the width. Only where that is too flat to read or too tall to print are heights stretched or squeezed, all alike.
+        scale = min(widest / narrowest, room / widest_mm)
+        self.bands = _bands(bays, room, scale)
+        filling = min((room - FRAME * len(band)) / sum(bay.width_mm for bay in band) for band in self.bands)
+        scale = max(scale, min(filling, self.widest_bay / widest_mm))
+        upright_scale = max(scale, (self.number + 2.2) / flattest)
         upright_scale = min(upright_scale, self.tallest / tallest_mm)
         self.across, self.up = scale, upright_scale
-        self.size = NUMBER
+        self.size = self.number
         if narrowest * scale < widest:
-            self.size = max(LEAST_NUMBER, NUMBER * narrowest * scale / widest)
-        self.bands = _bands(bays, room, scale)
+            self.size = max(LEAST_NUMBER, self.number * narrowest * scale / widest)
+        self.spot_high = self.size * 1.24
         self.cells_height = tallest_mm * upright_scale
-        self.spots = 10.0 if any(bay.low_spot for bay in bays) else 0.0
-        self.band_height = self.cells_height + self.spots + LABEL + 9.0
+        self.spots = self.spot_high + 2.0 if any(bay.low_spot for bay in bays) else 0.0
+        self.band_height = self.cells_height + self.spots + self.label + 9.0
         self.height = self.band_height * len(self.bands) + self._key_height()
 
     def _key_height(self) -> float:
@@ -288,7 +299,11 @@ class DepthChartFlow(Flowable):
                     pen.cell(next(places), (cell_x, y, wide * col_share, high * row_share))
                     cell_x += wide * col_share
             if bay.low_spot is not None:
-                pen.low_spot(bay.low_spot, bay.low_spot_under, (x + 0.6, top - high - 9.4, wide - 1.2, 8.2))
+                pen.low_spot(
+                    bay.low_spot,
+                    bay.low_spot_under,
+                    (x + 0.6, top - high - self.spot_high - 1.2, wide - 1.2, self.spot_high),
+                )
             x += wide + FRAME
         last = band[-1].height_mm * self.up
         pen.frames.append((x - FRAME, top - last - 1.5, FRAME, last + 3.0))
@@ -298,16 +313,16 @@ class DepthChartFlow(Flowable):
     def _labels(self, band: list[ChartBay], top: float) -> None:
         canvas = self.canv
         canvas.setFillColor(INK)
-        canvas.setFont(BOLD, LABEL)
-        y = top - self.cells_height - self.spots - LABEL - 1.0
+        canvas.setFont(BOLD, self.label)
+        y = top - self.cells_height - self.spots - self.label - 1.0
         x = GUTTER
-        widest = max(width(typeset(bay.label, BOLD), BOLD, LABEL) for bay in band)
+        widest = max(width(typeset(bay.label, BOLD), BOLD, self.label) for bay in band)
         narrowest = min(bay.width_mm * self.across for bay in band)
         every = 1 if widest + 1.5 <= narrowest + FRAME else int(widest / (narrowest + FRAME)) + 1
         for number, bay in enumerate(band):
             wide = bay.width_mm * self.across
             if number % every == 0:
-                label = fitted(typeset(bay.label, BOLD), BOLD, LABEL, max(wide * every, 14.0))
+                label = fitted(typeset(bay.label, BOLD), BOLD, self.label, max(wide * every, 14.0))
                 canvas.drawCentredString(x + wide / 2, y, label)
             x += wide + FRAME
         canvas.setFont(REGULAR, 6.4)

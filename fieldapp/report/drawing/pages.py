@@ -391,11 +391,19 @@ def draw_crew_sheet(sheet: CrewSheet, out: BinaryIO, *, paper: str = "letter") -
     """Write the crew sheet as PDF: touch-up by bay, no prose."""
     register()
     story: list[Flowable] = [Title(None, sheet.title, sheet.subtitle, 18.0, "top", 0), Spacer(0, 6)]
-    tallest = 300.0 / max(len(sheet.surfaces), 1)
-    for number, (name, chart, table) in enumerate(sheet.surfaces):
-        story += [Title(None, name, "", 13.0, f"surface-{number}", 0), TableFlow(table), Spacer(0, 4)]
+    bays = sum(len(chart.bays) for _, chart, _, _ in sheet.surfaces)
+    # One page: the more there is to say, the smaller each of it.
+    tallest = max(60.0, 330.0 / max(len(sheet.surfaces), 1))
+    number = 13.0 if bays <= 14 else 9.5 if bays <= 30 else 6.6
+    for place, (name, chart, sums, each) in enumerate(sheet.surfaces):
+        story += [Title(None, name, "", 14.0, f"surface-{place}", 0), TableFlow(sums, size=10.0), Spacer(0, 6)]
         if chart.bays:
-            story += [DepthChartFlow(chart, with_key=False, tallest=max(60.0, tallest)), Spacer(0, 8)]
+            story += [
+                DepthChartFlow(chart, with_key=False, tallest=tallest, number=number, widest_bay=84.0),
+                Spacer(0, 4),
+            ]
+        if each is not None and bays <= 30:
+            story += [TableFlow(each, size=9.4), Spacer(0, 8)]
     if not sheet.surfaces:
         story.append(Paragraph("Nothing to add, by these readings.", LEAD))
     story += [Paragraph(prose(note), BODY) for note in sheet.notes]

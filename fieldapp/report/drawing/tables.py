@@ -37,7 +37,7 @@ class TableFlow(Flowable):
         self.table = table
         self.rows = rows
         self.size = size if table.columns == 1 else size - 0.6
-        self.leading = LEADING if table.columns == 1 else LEADING - 0.9
+        self.leading = self.size + 2.0 if table.columns == 1 else LEADING - 0.9
 
     def wrap(self, available_width: float, _available_height: float) -> tuple[float, float]:
         """Size of the table. [pt]"""
