@@ -160,9 +160,14 @@ def test_a_job_without_a_surface_is_unproven_and_still_has_a_report() -> None:
 
 
 def test_markup_in_names_is_printed_and_not_obeyed() -> None:
-    sheet = Sheet.even(depth_mm=101.6, name="<b>Yard</b> & <font color='red'>sons", bays=2)
+    hostile = "<b>Yard</b> & <font color='red'>sons"
+    sheet = Sheet.even(depth_mm=101.6, name=hostile, bays=2)
+    sheet.records[2]["body"]["name"] = f"{hostile} wall"
+    sheet.write("visit", {"not_inspected": f"the {hostile} loft"})
+    sheet.write("deficiency", {"bay": sheet.bays[0], "sort": "gap", "severity": "stop", "text": f"{hostile} gap"})
     text = " ".join(pages_of(report_pdf(sheet.view())))
-    assert "<b>Yard</b> & <font color='red'>sons" in text
+    for what in ("", " wall", " loft", " gap"):
+        assert f"{hostile}{what}" in text
 
 
 @pytest.mark.parametrize("bays", [1, 2, 400])

@@ -8,7 +8,6 @@ import re
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 from datetime import datetime
-from math import isfinite
 from typing import Any, Final, Protocol
 
 UUID: Final = re.compile(r"[0-9a-f]{8}-[0-9a-f]{4}-[0-9a-f]{4}-[0-9a-f]{4}-[0-9a-f]{12}")
@@ -58,8 +57,8 @@ class Number:
     def check(self, value: Any, name: str) -> Problem | None:
         """Booleans and texts are no numbers."""
         good = isinstance(value, (int, float)) and not isinstance(value, bool) and abs(value) <= LARGEST_WHOLE
-        # One guard for all of it: comparisons with NaN are false, so they are written to be true for good values.
-        if good and isfinite(value):
+        # NaN and infinities fail this comparison too; those below are written to be true for good values.
+        if good:
             over_low = self.low is None or (value > self.low if self.above else value >= self.low)
             under_high = self.high is None or (value < self.high if self.below else value <= self.high)
             if over_low and under_high:
