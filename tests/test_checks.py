@@ -358,6 +358,12 @@ def test_only_a_random_sample_or_all_bays_support_a_statement(chosen: str | None
     assert (found.short_bays_at_most is not None) is supported
 
 
+def test_where_no_bay_can_be_judged_none_is_counted_as_not_short() -> None:
+    made = [even(80.0, str(number)) for number in range(20)]
+    found = reckoned(surface(made, bays_total_stated=60, chosen="random", spec=Spec(76.2)))
+    assert found.sampling.short_bays_at_most is None
+
+
 def test_bays_known_to_be_short_are_among_those_that_can_be() -> None:
     made = [even(80.0, str(number)) for number in range(9)] + [bay([40.0, None], label="x")]
     found = reckoned(surface(made, bays_total_stated=10, chosen="random"))
@@ -454,6 +460,13 @@ def test_vapor_is_spelled_as_the_jobs_units_go() -> None:
         found = reckoned(surface([even(90.0)], vapour=DEPTH_RULE), units=units).check("vapour")
         assert found is not None
         assert spelled in found.asked
+
+
+def test_a_share_near_nothing_is_written_so_that_the_miss_is_seen() -> None:
+    thin = bay([70.0, 80.0], [0.4, 99.6])
+    found = reckoned(surface([thin], spec=Spec(76.2, "average", under_area_share_max=0.003))).check("under-spray")
+    assert found is not None
+    assert found.found.startswith("0.4 % of the")
 
 
 def test_a_depth_that_misses_is_never_written_equal_to_its_limit() -> None:

@@ -291,12 +291,14 @@ def _sampling(
         SampledBay(bay.area_m2, found.area_depth / found.area_m2, found.variance_mm2, found.points_read)
         for bay, found, _ in read
     ]
+    # Where no bay could be judged, none is known not to be short: nothing can be said of the others.
+    judged = any({bay.lowest_depth, bay.vapour} & {"short", "meets"} for _, _, bay in read)
     short_read = sum(_depth_or_vapour_short(result) for _, _, result in read)
     known_short = sum(_depth_or_vapour_short(result) for result in bays)
     return Sampling(
         CONFIDENCE,
         mean_lower_bound_mm(sample, bays_total),
-        max(known_short, short_bays_at_most(bays_total, len(read), short_read)),
+        max(known_short, short_bays_at_most(bays_total, len(read), short_read)) if judged else None,
     )
 
 

@@ -4,13 +4,15 @@ from collections.abc import Sequence
 from typing import Final
 
 from fieldapp.reckoning.limits import at_most
+from fieldapp.reckoning.units import NG_PER_PERM
 
 #: Upper limits of the vapour retarder classes: 0.1, 1 and 10 perm. [ng/(Pa s m2)] Source: International Residential Code
 #: 2021, table R702.7(1), by ASTM E96 procedure A.
-CLASS_LIMITS_NG: Final = (("I", 5.72), ("II", 57.2), ("III", 572.0))
+#: The limits themselves belong to the class, so they are exact: a sheet of '1 perm' is class II.
+CLASS_LIMITS_NG: Final = (("I", 0.1 * NG_PER_PERM), ("II", NG_PER_PERM), ("III", 10.0 * NG_PER_PERM))
 
 #: A retarder by itself must be of class II or better. [ng/(Pa s m2)]
-SEPARATE_RETARDER_NG: Final = 57.2
+SEPARATE_RETARDER_NG: Final = NG_PER_PERM
 
 
 def permeance_ng(depths_mm: Sequence[float], areas_m2: Sequence[float], permeability_ng_m: float) -> float | None:

@@ -187,11 +187,16 @@ class Wording:
         return f"{half_up(share * 100.0)} %"
 
     def percent_held(self, share: float, limit: float) -> str:
-        """A share held against a greatest one."""
+        """A share held against a greatest one; near nothing and near all, to more places instead of 'just over'."""
         text = self.percent(share)
         if at_most(share, limit) or text != self.percent(limit):
             return text
-        return f"just over {text}"
+        if text[0].isdigit():
+            return f"just over {text}"
+        places = 1
+        while places < 6 and half_up(share * 100.0, places) == half_up(limit * 100.0, places):
+            places += 1
+        return f"{half_up(share * 100.0, places)} %"
 
     def density_held(self, kg_m3: float, low: float | None, high: float | None) -> str:
         """A density held against its limits."""

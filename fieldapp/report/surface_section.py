@@ -236,20 +236,19 @@ def _sample(_job: JobView, view: SurfaceView) -> Part | None:
     result, words = view.result, view.words
     if not result.bays_read:
         return None
-    told: list[str] = []
-    if result.sampling.short_bays_at_most is None:
-        told.append(
-            f"{result.bays_read} of {count(result.bays_total, 'bay')} were read, and not as a random sample: they say nothing "
-            "of the bays that were not read."
-        )
-    elif result.bays_read < result.bays_total:
-        told.append(
-            f"{result.bays_read} of {count(result.bays_total, 'bay')} were read, picked at random. With 95 % confidence at "
-            f"most {result.sampling.short_bays_at_most} of the {result.bays_total} can be short in lowest depth or "
-            f"{words.vapor} depth."
-        )
+    read = f"{result.bays_read} of {count(result.bays_total, 'bay')} were read"
+    most = result.sampling.short_bays_at_most
+    if result.bays_read == result.bays_total:
+        told = ["Every bay was read; between the points nobody did."]
+    elif view.counted.chosen != "random":
+        told = [f"{read}, and not as a random sample: they say nothing of the bays that were not read."]
+    elif most is None:
+        told = [f"{read}, picked at random; what is asked of a single bay is not stated, so none can be judged."]
     else:
-        told.append("Every bay was read; between the points nobody did.")
+        told = [
+            f"{read}, picked at random. With 95 % confidence at most {most} of the {result.bays_total} can be short in "
+            f"lowest depth or {words.vapor} depth."
+        ]
     if result.sampling.mean_lower_mm is not None:
         told.append(
             f"The readings support a mean depth of at least {words.fine_depth(result.sampling.mean_lower_mm)} "
