@@ -39,6 +39,15 @@ def millimetres(depth_mm: float) -> tuple[float, str]:
     return float(whole), str(whole)
 
 
+def _exact(value: Any) -> Any:
+    """Numbers as they are meant: 3 in is 76.2 mm, not the 76.19999999999999 that binary arithmetic makes of it."""
+    if isinstance(value, float):
+        return round(value, 6)
+    if isinstance(value, dict):
+        return {name: _exact(part) for name, part in value.items()}
+    return [_exact(part) for part in value] if isinstance(value, list) else value
+
+
 @dataclass
 class Device:
     """A phone in somebody's hand, with its own count and its own time."""
@@ -78,7 +87,7 @@ class Writer:
         record_id = stable_uuid(f"{self.name} {device.name} {device.n}", device.at)
         at = device.at.astimezone(UTC).strftime("%Y-%m-%dT%H:%M:%S.") + f"{device.at.microsecond // 1000:03d}Z"
         envelope = {"id": record_id, "job": self.job, "kind": kind, "at": at, "by": device.by, "device": device.name}
-        self.records.append({**envelope, "n": device.n, "body": body})
+        self.records.append({**envelope, "n": device.n, "body": _exact(body)})
         return record_id
 
     def reading(self, bay: str, row: int, col: int, depth_mm: float, **more: Any) -> str:
@@ -119,6 +128,8 @@ class Writer:
         if self.photos:
             beside = folder / self.name
             beside.mkdir(exist_ok=True)
+            for stale in set(beside.glob("*.jpg")) - {beside / f"{digest}.jpg" for digest in self.photos}:
+                stale.unlink()
             for digest, content in self.photos.items():
                 (beside / f"{digest}.jpg").write_bytes(content)
 

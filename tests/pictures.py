@@ -35,8 +35,8 @@ def main() -> None:
         with pdf.open("wb") as out:
             draw_report(build_report(sample(NAME)), out, photos=ROOT / "sample_jobs" / NAME)
         save(page(pdf, 1), "page-one.png")
-        wide, high = page(pdf, 3).size
-        save(page(pdf, 3).crop((0, 0, wide, high * 62 // 100)), "depth-chart.png")
+        wide, high = page(pdf, 2).size
+        save(page(pdf, 2).crop((0, 0, wide, high * 62 // 100)), "depth-chart.png")
 
 
 if __name__ == "__main__":

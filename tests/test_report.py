@@ -242,6 +242,7 @@ def test_the_crew_sheet_is_one_page_and_names_every_bay_that_lacks_foam(name: st
     draw_crew_sheet(build_crew_sheet(view), out)
     texts = pages_of(out.getvalue())
     assert len(texts) == 1
+    # A bay that was touched up and not read again is named too: to be read before anything is added.
     lacking = {bay.label for s in view.result.surfaces for bay in s.bays if bay.touch_up.volume_m3}
     for label in lacking:
         assert label in texts[0]

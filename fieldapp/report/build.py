@@ -11,7 +11,7 @@ from fieldapp.records.file import Loaded
 from fieldapp.report.back_matter import appendix_section, cautions_section, method_section, other_photos
 from fieldapp.report.charts import touch_up_chart
 from fieldapp.report.model import CrewSheet, Report, Section, SurfaceLine, Table
-from fieldapp.report.sentences import alarms, answer, covering, of_read, to_do
+from fieldapp.report.sentences import alarms, answer, covering, to_do
 from fieldapp.report.surface_section import surface_section, touch_up_table
 from fieldapp.report.terms import BASES
 from fieldapp.report.view import JobView, SurfaceView
@@ -75,7 +75,10 @@ def _slug(text: str) -> str:
 
 def _facts(view: JobView) -> tuple[tuple[str, str], ...]:
     readings = [r for r in view.job.of("reading") if r.body["purpose"] == view.result.purpose]
-    readers = sorted({record.by for record in readings})
+    role = "applicator" if view.is_self_check else "inspector"
+    # A signature gives an account its person's name.
+    names = {record.by: str(record.body["name"]) for record in view.job.of("signature") if record.body["role"] == role}
+    readers = sorted({names.get(record.by, record.by) for record in readings})
     lots = sorted(
         {
             f"A-side {record.body.get('lot_a') or 'not noted'}, B-side {record.body.get('lot_b') or 'not noted'}"
@@ -118,7 +121,9 @@ def _line(view: JobView, surface: SurfaceView) -> SurfaceLine:
         (f"{result.bays_read} of {result.bays_total}", "bays"),
         blank if depth.min is None else (words.depth_held(depth.min, limit), ""),
         blank if depth.mean is None else (words.depth_held(depth.mean, spec.depth_mm), ""),
-        blank if under.area_share is None else (words.percent(under.area_share), of_read(surface)),
+        blank
+        if under.area_share is None
+        else (words.percent(under.area_share), f"{words.percent(result.read_share)} read"),
         blank
         if result.rsi.delivered is None
         else (words.r_held(result.rsi.delivered, spec.rsi or 0.0), f"asked {words.r(spec.rsi)}" if spec.rsi else ""),
@@ -176,8 +181,8 @@ def _not_said(view: JobView) -> tuple[str, ...]:
     return tuple(told)
 
 
-def _wait(surface: SurfaceView) -> str:
-    foam, passes = surface.foam, surface.result.touch_up.passes
+def _wait(surface: SurfaceView, passes: int | None) -> str:
+    foam = surface.foam
     if passes is not None and passes < 2:
         return "–"
     return f"{foam.pass_wait_min:g} min" if foam and foam.pass_wait_min else "by the sheet"
@@ -189,29 +194,32 @@ def build_crew_sheet(view: JobView) -> CrewSheet:
     notes: list[str] = []
     for surface in view.surfaces:
         chart = touch_up_chart(surface, view.job.bays[surface.result.key])
-        repair = surface.result.touch_up
-        if not chart.bays and not repair.volume_m3:
+        add = surface.to_add()
+        if not chart.bays and not add.missing_m3:
             continue
-        words = surface.words
+        words, limit = surface.words, surface.touch_up_limit_mm
         rows = (
             (
-                words.depth(surface.point_limit_mm)
-                if surface.point_limit_mm
-                else f"mean {words.depth(surface.counted.spec.depth_mm)}",
-                words.depth(repair.deepest_missing_mm or 0.0),
-                words.foam(repair.volume_m3 or 0.0),
-                words.foam(repair.order_m3 or 0.0),
-                "ask the sheet" if repair.passes is None else str(repair.passes),
-                _wait(surface),
+                words.depth(limit) if limit else f"mean {words.depth(surface.counted.spec.depth_mm)}",
+                words.depth(add.deepest_mm),
+                words.foam(add.missing_m3),
+                words.foam(add.order_m3),
+                "ask the sheet" if add.passes is None else str(add.passes),
+                _wait(surface, add.passes),
             ),
         )
         head = ("Bring to", "Deepest to add", "Missing", "To order", "Passes, at least", "Wait between")
-        surfaces.append((surface.name, chart, Table(head, rows, (1 / 6,) * 6), touch_up_table(surface)))
-        if repair.exceeds_max_depth and surface.max_depth_mm is not None:
+        surfaces.append((surface.name, chart, Table(head, rows, (1 / 6,) * 6), touch_up_table(surface, waiting=False)))
+        if surface.result.touch_up.exceeds_max_depth and surface.max_depth_mm is not None:
             notes.append(
                 f"{surface.name}: would exceed {words.depth(surface.max_depth_mm)} (limit entered): ask first."
             )
     notes.append("Data sheet decides. Foam must have cooled between passes. Never spray into rising foam.")
+    for surface in view.surfaces:
+        if surface.waiting:
+            notes.append(
+                f"{surface.name}: {surface.named(surface.waiting)} touched up already; read before adding more."
+            )
     notes.append("Each bay is short until it is read again.")
     return CrewSheet(
         title=view.job.name,

@@ -97,7 +97,7 @@ def _notes(view: SurfaceView, bays: tuple[ChartBay, ...], asked_mm: float) -> tu
 
 def touch_up_chart(view: SurfaceView, things: tuple[Thing, ...]) -> DepthChart:
     """The short bays of a surface with what each point still needs, for the crew."""
-    words, limit = view.words, view.point_limit_mm
+    words, limit = view.words, view.touch_up_limit_mm
     chosen: list[ChartBay] = []
     for thing, bay in bay_things(view, things):
         cells: list[Cell] = []
@@ -110,7 +110,9 @@ def touch_up_chart(view: SurfaceView, things: tuple[Thing, ...]) -> DepthChart:
                 cells.append(Cell("" if depth is not None else cell.text, "over" if depth is not None else cell.state))
         low = min(bay.low_spots_mm, default=None)
         low_short = low is not None and low < limit - DEPTH_TOLERANCE_MM
-        if low_short or any(cell.text.startswith("+") for cell in cells):
+        lacks = low_short or any(cell.text.startswith("+") for cell in cells)
+        # A bay that was touched up and not read again is read first; nobody knows what it lacks now.
+        if lacks and not bay.waiting:
             made = _chart_bay(view, thing, bay, tuple(cells))
             spot = f"+{words.depth_number(limit - low)}" if low is not None and low_short else None
             chosen.append(

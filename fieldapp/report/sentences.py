@@ -156,15 +156,18 @@ def surface_sentence(view: SurfaceView) -> Sentence:
         return Sentence(f"{view.name} is unproven: {'; '.join(unproven_reasons(view))}.", result="unproven")
     clauses = surface_clauses(view)
     text = f"{view.name} is short: {'; '.join(clause for clause, _ in clauses)}."
+    if view.waiting:
+        wait = "wait" if len(view.waiting) > 1 else "waits"
+        text += f" {capital(view.named(view.waiting))}, touched up, {wait} to be read again."
     most = view.result.sampling.short_bays_at_most
     if most is not None and view.result.bays_read < view.result.bays_total:
         text += f" By this sample up to {most} of {view.result.bays_total} bays can be short."
     if view.unread():
         text += f" Besides, {view.named(view.unread())} {'was' if len(view.unread()) == 1 else 'were'} not read."
-    repair = view.result.touch_up
-    if repair.volume_m3:
-        mend = f"About {view.words.foam(repair.volume_m3)} more, {passes_text(view, repair.passes)}"
-        text += f" {mend}, would bring its depth to specification, if read again."
+    add = view.to_add()
+    if add.missing_m3:
+        text += f" About {view.words.foam(add.missing_m3)} more, {passes_text(view, add.passes)},"
+        text += " would bring its depth to specification, if read again."
     return Sentence(text, frozenset(bay.key for _, bays in clauses for bay in bays), "short")
 
 
@@ -294,34 +297,36 @@ def to_do(view: JobView) -> tuple[Sentence, ...]:
 
 def _foam_steps(view: SurfaceView) -> list[Sentence]:
     """What to add where and how, and what to read again after it: one step for a surface."""
-    words, foam, repair = view.words, view.foam, view.result.touch_up
-    short = [bay for bay in view.result.bays if bay.touch_up.volume_m3]
+    words, foam, add = view.words, view.foam, view.to_add()
     said: list[str] = []
-    if repair.volume_m3:
-        amount = f"{words.foam(repair.volume_m3)} missing"
-        if repair.order_m3 and repair.order_m3 > repair.volume_m3:
-            amount += f", order {words.foam(repair.order_m3)}"
-        where = view.named(short) if short else "over the area read, thin bays first"
-        deepest = words.depth(repair.deepest_missing_mm or 0.0)
-        said.append(f"{where}: add up to {deepest}, {passes_text(view, repair.passes)}; {amount}")
+    if add.missing_m3:
+        amount = f"{words.foam(add.missing_m3)} missing"
+        if add.order_m3 > add.missing_m3:
+            amount += f", order {words.foam(add.order_m3)}"
+        where = view.named(list(add.bays)) if add.bays else "over the area read, thin bays first"
+        said.append(f"{where}: add up to {words.depth(add.deepest_mm)}, {passes_text(view, add.passes)}; {amount}")
     spots = [bay for bay in view.result.bays if is_short_low_spot(bay) and not bay.touch_up.volume_m3]
     if spots:
         each = listed([f"bay {bay.label} ({words.depth(bay.low_spot_mm or 0.0)})" for bay in spots])
-        said.append(f"fill the low spot of {each} to {words.depth(view.point_limit_mm)}")
-    again = [bay for bay in view.result.bays if "short" in (bay.lowest_depth, bay.vapour)]
+        said.append(f"fill the low spot of {each} to {words.depth(view.touch_up_limit_mm)}")
+    short = [bay for bay in view.result.bays if "short" in (bay.lowest_depth, bay.vapour)]
+    again = [bay for bay in short if not bay.waiting_for_reading]
     if again:
         first = [bay for bay in again if bay.vapour == "short"]
         which = "them" if len(again) > 1 else "it"
         order = f", {view.named(first)} first" if first and len(first) < len(again) else ""
         said.append(f"read {which} again before anything covers {which}{order}")
+    if view.waiting:
+        which = "them" if len(view.waiting) > 1 else "it"
+        said.append(f"{view.named(view.waiting)}, touched up and not read again: read {which} before adding any more")
     if not said:
         return []
-    text = f"{view.name}, {'; '.join(said)}." if repair.volume_m3 else f"{view.name}: {'; '.join(said)}."
-    if foam is not None and foam.pass_wait_min and (repair.passes or 0) > 1:
+    text = f"{view.name}, {'; '.join(said)}." if add.missing_m3 else f"{view.name}: {'; '.join(said)}."
+    if foam is not None and foam.pass_wait_min and (add.passes or 0) > 1:
         text += f" Wait {foam.pass_wait_min:g} min between passes by the data sheet; the foam must have cooled."
-    if repair.exceeds_max_depth and view.max_depth_mm is not None:
+    if view.result.touch_up.exceeds_max_depth and view.max_depth_mm is not None:
         text += f" Some of it would exceed {words.depth(view.max_depth_mm)}, the limit entered: ask before spraying."
-    return [Sentence(text, frozenset(bay.key for bay in (*short, *spots, *again)))]
+    return [Sentence(text, frozenset(bay.key for bay in (*add.bays, *spots, *again)))]
 
 
 def is_short_low_spot(bay: BayResult) -> bool:
@@ -331,8 +336,6 @@ def is_short_low_spot(bay: BayResult) -> bool:
 
 def _reading_steps(view: SurfaceView) -> list[Sentence]:
     steps: list[Sentence] = []
-    if waiting := [bay for bay in view.result.bays if bay.waiting_for_reading and bay.result != "short"]:
-        steps.append(Sentence(f"{view.name}: touched up and not read again: {view.named(waiting)}."))
     if unread := view.unread():
         steps.append(Sentence(f"{view.name}: read {view.named(unread)}."))
     missing = view.result.bays_total - view.result.bays_laid_out

@@ -212,10 +212,16 @@ def _touch_up(_job: JobView, view: SurfaceView) -> Part | None:
     return Part("Touch-up, bay by bay", tuple(prose), table)
 
 
-def touch_up_table(view: SurfaceView) -> Table | None:
-    """What each bay lacks, the most missing first; None where nothing can be said bay by bay."""
+def touch_up_table(view: SurfaceView, *, waiting: bool = True) -> Table | None:
+    """What each bay lacks, the most missing first; None where nothing can be said bay by bay.
+
+    Args:
+        view: The surface.
+        waiting: Whether bays that were touched up and not read again are listed too.
+    """
     words = view.words
     bays = [bay for bay in view.result.bays if bay.touch_up.volume_m3 or is_short_low_spot(bay)]
+    bays = [bay for bay in bays if waiting or not bay.waiting_for_reading]
     bays.sort(key=lambda bay: -(bay.touch_up.volume_m3 or 0.0))
     rows = tuple(
         (

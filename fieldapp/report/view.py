@@ -5,6 +5,7 @@ from dataclasses import dataclass
 from datetime import UTC, datetime, tzinfo
 from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 
+from fieldapp.reckoning.bays import passes, point_limit_mm
 from fieldapp.reckoning.inputs import CountedBay, CountedSurface, Foam
 from fieldapp.reckoning.limits import depth_meets, depth_over
 from fieldapp.reckoning.results import BayResult, JobResult, SurfaceResult
@@ -31,6 +32,20 @@ MONTHS = [
 
 
 @dataclass(frozen=True, slots=True)
+class ToAdd:
+    """Foam to add now. What was touched up and not read again is left out: it is read first, nobody knows what it lacks.
+
+    `bays` is empty where only a mean is lacking; volumes in m3, depth in mm.
+    """
+
+    bays: tuple[BayResult, ...]
+    missing_m3: float
+    order_m3: float
+    deepest_mm: float
+    passes: int | None
+
+
+@dataclass(frozen=True, slots=True)
 class SurfaceView:
     """One surface from all sides."""
 
@@ -52,7 +67,7 @@ class SurfaceView:
 
     @property
     def point_limit_mm(self) -> float:
-        """The depth under which a point is short: the basis's for single points, and closed cell's vapour depth. [mm]"""
+        """The depth under which a point is short: the basis's for single points, and what the vapour rule asks. [mm]"""
         return max(self.counted.spec.single_point_mm, self.vapour_depth_mm or 0.0)
 
     @property
@@ -71,6 +86,34 @@ class SurfaceView:
     def max_depth_mm(self) -> float | None:
         """The greatest depth allowed. [mm]"""
         return greatest_depth_mm(self.counted)
+
+    @property
+    def touch_up_limit_mm(self) -> float:
+        """The depth to which a touch-up brings a point. [mm]"""
+        return point_limit_mm(self.foam, self.counted.spec, self.counted.vapour)
+
+    @property
+    def waiting(self) -> list[BayResult]:
+        """Bays touched up and not read again."""
+        return [bay for bay in self.result.bays if bay.waiting_for_reading]
+
+    def to_add(self) -> ToAdd:
+        """What to add now."""
+        whole = self.result.touch_up
+        lacking = [bay for bay in self.result.bays if bay.touch_up.volume_m3]
+        bays = tuple(bay for bay in lacking if not bay.waiting_for_reading)
+        if len(bays) == len(lacking):
+            return ToAdd(
+                bays, whole.volume_m3 or 0.0, whole.order_m3 or 0.0, whole.deepest_missing_mm or 0.0, whole.passes
+            )
+        deepest = max((bay.touch_up.deepest_missing_mm or 0.0 for bay in bays), default=0.0)
+        return ToAdd(
+            bays=bays,
+            missing_m3=sum(bay.touch_up.volume_m3 or 0.0 for bay in bays),
+            order_m3=sum(bay.touch_up.order_m3 or 0.0 for bay in bays),
+            deepest_mm=deepest,
+            passes=passes(deepest, self.foam.max_pass_mm if self.foam else None),
+        )
 
     def is_under(self, depth_mm: float) -> bool:
         """True where a depth is under the specified depth or the vapour depth: hatched in the charts."""

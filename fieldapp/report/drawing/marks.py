@@ -13,7 +13,7 @@ def draw_mark(canvas: Any, x: float, y: float, result: Result, size: float = 9.0
     canvas.saveState()
     canvas.setLineWidth(size * 0.09)
     canvas.setStrokeColor(INK)
-    line = y + size * 0.62
+    line = y + size * 0.58
     if result == "unproven":
         canvas.setDash(size * 0.16, size * 0.13)
         canvas.setFillColor(PAPER)
@@ -22,14 +22,14 @@ def draw_mark(canvas: Any, x: float, y: float, result: Result, size: float = 9.0
     else:
         canvas.rect(x, y, size, size, stroke=1, fill=0)
         canvas.setFillColor(INK)
-        height = size * (0.86 if result == "meets" else 0.4)
+        height = size * (0.92 if result == "meets" else 0.4)
         canvas.rect(x, y, size, height, stroke=0, fill=1)
-    if result == "meets":
-        # Paper on both sides of the line, or it drowns in the fill.
-        canvas.setStrokeColor(PAPER)
-        canvas.setLineWidth(size * 0.36)
-        canvas.line(x + size * 0.05, line, x + size * 0.95, line)
     canvas.setStrokeColor(ACCENT)
-    canvas.setLineWidth(size * 0.13)
-    canvas.line(x - size * 0.16, line, x + size * 1.16, line)
+    canvas.setLineWidth(size * 0.14)
+    canvas.line(x - size * 0.24, line, x + size * 1.24, line)
+    if result == "meets":
+        # Across the fill the line is paper, or it would drown in it.
+        canvas.setStrokeColor(PAPER)
+        canvas.setLineWidth(size * 0.1)
+        canvas.line(x + size * 0.1, line, x + size * 0.9, line)
     canvas.restoreState()
