@@ -5,9 +5,7 @@ from datetime import UTC, datetime
 from sample_jobs import pictures
 from sample_jobs.depths import Foam
 from sample_jobs.layout import STATEMENT, TABLED, Bays, begin, foam, lay_out, read_all, surface
-from sample_jobs.writer import Writer
-
-
+from sample_jobs.writer import Writer, millimetres
 
 
 def riviere_basement() -> Writer:
@@ -61,7 +59,7 @@ def riviere_basement() -> Writer:
     )
     wall_keys = lay_out(job, wall, wall_bays, [f"F{number}" for number in range(1, 13)])
     job.device = job.inspector
-    read_all(job, rim_keys, rim_bays, Foam(85.0, 31, drift_mm=3.0, crown_mm=6.0, hand_mm=6.0))
+    rim_read = read_all(job, rim_keys, rim_bays, Foam(85.0, 31, drift_mm=3.0, crown_mm=6.0, hand_mm=6.0))
     read_all(job, wall_keys, wall_bays, Foam(74.0, 33, drift_mm=-3.0, crown_mm=7.0, reach_mm=3.0, hand_mm=7.0))
     for number, (bay, mass) in enumerate(((1, 8.05), (8, 8.31)), 1):
         job.write(
@@ -79,8 +77,11 @@ def riviere_basement() -> Writer:
         )
     job.write("pull", bay=wall_keys[4], kpa=210.0, broke="in-foam", note="plaque collée de 50 mm")
     job.photo(
-        pictures.probe("84 mm", 84 / INCH, "probe in the rim, drawn to its scale in inches", 17),
+        pictures.probe(millimetres(rim_read[3, 0, 0][1]), "probe in the rim", 17, metric=True),
         bay=rim_keys[3],
+        row=0,
+        col=0,
+        about=rim_read[3, 0, 0][0],
         shows="probe-scale",
         caption="Solive de rive, case R4",
     )

@@ -1,13 +1,12 @@
 """What the sample jobs share: foams, bays in a grid, and the readings of a surface."""
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from datetime import datetime
 from typing import Any
 
 from sample_jobs.depths import Foam
 from sample_jobs.writer import INCH, Writer
-
 
 INVENTED = "Invented demo job: every name, place, firm, product and figure in it is made up."
 SOURCE = "invented for this demo; values in the range usual in the trade (common practice, no source)"
@@ -103,16 +102,26 @@ def surface(job: Writer, name: str, assembly: str, foam_key: str, bays_total: in
 
 
 def read_all(
-    job: Writer, keys: list[str], bays: Bays, sprayed: Foam, skip: Iterable[int] = (), **more: Any
+    job: Writer,
+    keys: list[str],
+    bays: Bays,
+    sprayed: Foam,
+    skip: Iterable[int] = (),
+    stands: Sequence[int] | None = None,
+    **more: Any,
 ) -> dict[tuple[int, int, int], tuple[str, float]]:
-    """Read every point of every bay; returns the record and the depth at each (bay, row, col)."""
+    """Read every point of every bay; returns the record and the depth at each (bay, row, col).
+
+    `stands` tells where along the surface each bay stands (0, 1, ...), where only some of its bays are laid out.
+    """
     left_out = set(skip)
+    where = stands or range(len(keys))
     found = {}
     for number, key in enumerate(keys):
         if number in left_out:
             continue
         job.device.at = job.device.at.replace(microsecond=(number * 137 % 1000) * 1000)
         for row, col, across, down in bays.places():
-            depth = sprayed.depth_mm(number, len(keys), across, down)
+            depth = sprayed.depth_mm(where[number], where[-1] + 1, across, down)
             found[number, row, col] = (job.reading(key, row, col, depth, **more), depth)
     return found

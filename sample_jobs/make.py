@@ -13,7 +13,6 @@ from sample_jobs.writer import Writer
 HERE = Path(__file__).resolve().parent
 
 
-
 JOBS: tuple[Callable[[], Writer], ...] = (
     tamarack_yard,
     hollow_road,

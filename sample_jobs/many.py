@@ -7,9 +7,6 @@ from sample_jobs.depths import Foam
 from sample_jobs.layout import CLOSED, Bays, begin, foam, lay_out, read_all, surface
 from sample_jobs.writer import FOOT, INCH, Writer
 
-
-
-
 #: Of the draw; it stands in the surface, so that anybody can draw the same bays again.
 SEED = 160
 
@@ -45,7 +42,8 @@ def larch_hall() -> Writer:
     )
     keys = lay_out(job, floor, bays, [str(label) for label in drawn])
     job.device = job.inspector
-    read_all(job, keys, bays, Foam(3.47 * INCH, 44, drift_mm=4.0, crown_mm=6.0, reach_mm=12.0, hand_mm=9.0))
+    sprayed = Foam(3.47 * INCH, 44, drift_mm=4.0, crown_mm=6.0, reach_mm=12.0, hand_mm=9.0)
+    read_all(job, keys, bays, sprayed, stands=[label - 1 for label in drawn])
     job.write("visit", asked="a sample of 40 bays drawn at random", not_inspected="the 120 bays that were not drawn")
     return job
 
@@ -55,7 +53,7 @@ def alder_court() -> Writer:
     job = begin(
         "alder-court-units",
         datetime(2026, 6, 8, 13, 0, tzinfo=UTC),
-        "Alder Court, party walls of 12 units",
+        "Alder Court, exterior walls of 12 units",
         site="Invented site, Alder Court",
         contractor="Demo crew 1",
         tz="America/New_York",

@@ -11,6 +11,10 @@ PAPER, INK = "#fbf9f4", "#17202b"
 FOAM, FOAM_DARK, FOAM_LIGHT = "#d8c9a4", "#b8a67c", "#e9dfc4"
 WOOD, WOOD_DARK, DECK = "#b98a55", "#8d6438", "#caa877"
 STEEL, STEEL_DARK = "#aab4bd", "#6d7984"
+HOLLOW, MARK = "#4a3f2a", "#8a2f4d"
+
+#: Of a probe in its foam: 80 pixels an inch.
+PIXELS_PER_MM = 80 / 25.4
 
 Draw = ImageDraw.ImageDraw
 
@@ -54,12 +58,15 @@ def _rafter(draw: Draw, x: int, top: int = 0, bottom: int = 820, wide: int = 84)
         draw.line((x + line, top, x + line + 6, bottom), fill=WOOD_DARK, width=2)
 
 
-def probe(depth: str, inches: float, caption: str, seed: int) -> bytes:
-    """A probe in foam between two rafters, cut open so that the depth can be read off its scale of inches."""
+def probe(read: tuple[float, str], caption: str, seed: int, *, metric: bool = False) -> bytes:
+    """A probe in foam between two rafters, cut open so that the depth that was read (mm, as typed) stands on its scale."""
+    depth_mm, typed = read
+    # The step of the marks, and every how many of them one is middling or numbered: eighths of an inch, or 5 mm.
+    mark_mm, middle, numbered = (5.0, 1, 2) if metric else (3.175, 4, 8)
     image, draw = _begin("#e7e2d6")
     draw.rectangle((0, 640, 1200, 700), fill=DECK, outline=WOOD_DARK, width=4)
     draw.text((470, 652), "sheathing", fill=INK, font=_font(30))
-    surface = int(640 - 80 * inches)
+    surface = int(640 - PIXELS_PER_MM * depth_mm)
     chance = Random(seed)
     top = [(x, surface + int(14 * sin((x - 600) / 70)) + chance.randint(-3, 3)) for x in range(180, 1021, 20)]
     draw.polygon([(180, 640), *top, (1020, 640)], fill=FOAM, outline=FOAM_DARK)
@@ -70,16 +77,15 @@ def probe(depth: str, inches: float, caption: str, seed: int) -> bytes:
     _rafter(draw, 96, 120, 640)
     _rafter(draw, 1020, 120, 640)
     draw.rectangle((586, 60, 614, 640), fill=STEEL, outline=STEEL_DARK, width=3)
-    for step in range(0, 57):
-        y = 640 - step * 10
-        if y < 80:
-            break
-        long = 34 if step % 8 == 0 else 18 if step % 4 == 0 else 10
+    for step in range(int(560 / (PIXELS_PER_MM * mark_mm)) + 1):
+        y = round(640 - step * mark_mm * PIXELS_PER_MM)
+        long = 34 if step % numbered == 0 else 18 if step % middle == 0 else 10
         draw.line((614, y, 614 + long, y), fill=INK, width=3)
-        if step % 8 == 0:
-            draw.text((656, y - 18), str(step // 8), fill=INK, font=_font(32))
-    draw.line((420, surface, 586, surface), fill="#8a2f4d", width=6)
-    draw.text((250, surface - 76), depth, fill="#8a2f4d", font=_font(62))
+        if step % numbered == 0:
+            number = step // numbered * (10 if metric else 1)
+            draw.text((656, y - (13 if metric else 18)), str(number), fill=INK, font=_font(24 if metric else 32))
+    draw.line((420, surface, 586, surface), fill=MARK, width=6)
+    draw.text((250, surface - 90), f"{typed} mm" if metric else f"{typed} in", fill=MARK, font=_font(62))
     return _finish(image, caption)
 
 
@@ -112,21 +118,75 @@ def drum_label(lines: list[str], caption: str) -> bytes:
     return _finish(image, caption)
 
 
-def gap_at_pipe(caption: str, *, mended: bool, seed: int) -> bytes:
-    """A pipe through foam: with a gap behind it, or filled."""
-    image, draw = _begin()
-    _foam(draw, (140, 30, 1060, 820), seed)
-    _rafter(draw, 56)
-    _rafter(draw, 1060)
-    if not mended:
-        draw.polygon([(430, 60), (520, 40), (536, 790), (440, 800), (404, 500)], fill="#4a3f2a")
-        draw.polygon([(660, 120), (712, 90), (720, 700), (676, 760)], fill="#4a3f2a")
-    if mended:
-        for left, right, more in ((420, 540, 5), (640, 740, 6)):
-            draw.rectangle((left - 4, 96, right + 4, 784), fill=FOAM_DARK)
-            _foam(draw, (left, 100, right, 780), seed + more, 18)
+def _ragged(draw: Draw, box: tuple[int, int, int, int], seed: int, fill: str) -> None:
+    """An upright patch with uneven edges, as foam tears or fills."""
+    left, top, right, bottom = box
+    chance = Random(seed)
+    edge = [(y, chance.randint(-16, 16), chance.randint(-16, 16)) for y in range(top, bottom + 1, 46)]
+    outline = [(left + out, y) for y, out, _ in edge] + [(right + out, y) for y, _, out in reversed(edge)]
+    draw.polygon(outline, fill=fill)
+
+
+def _pipe(draw: Draw) -> None:
     draw.rectangle((512, 0, 668, 820), fill=STEEL, outline=STEEL_DARK, width=5)
     draw.rectangle((548, 0, 574, 820), fill="#cfd6dc")
+
+
+def gap_at_pipe(caption: str, *, mended: bool, seed: int) -> bytes:
+    """A pipe through foam: with a gap beside it, or filled with newer, paler foam."""
+    image, draw = _begin()
+    _foam(draw, (0, 0, 1200, 820), seed)
+    for left, right, more in ((420, 560, 5), (620, 726, 6)):
+        _ragged(draw, (left, 40, right, 800), seed + more, FOAM_LIGHT if mended else HOLLOW)
+        if mended:
+            chance = Random(seed + more + 10)
+            for _ in range(60):
+                x, y, size = chance.randint(left - 8, right - 8), chance.randint(50, 770), chance.randint(9, 19)
+                draw.ellipse((x + 2, y + 3, x + size + 4, y + size + 3), fill=FOAM_DARK)
+                draw.ellipse((x, y, x + size + 2, y + size), fill="#f1ead6")
+    _rafter(draw, 20)
+    _rafter(draw, 1096)
+    _pipe(draw)
+    return _finish(image, caption)
+
+
+def void_behind_pipe(caption: str, seed: int) -> bytes:
+    """A stud bay seen from above, cut across: foam in front of a pipe and beside it, nothing behind."""
+    image, draw = _begin("#e7e2d6")
+    draw.rectangle((0, 120, 1200, 186), fill=DECK, outline=WOOD_DARK, width=4)
+    draw.text((500, 132), "sheathing", fill=INK, font=_font(30))
+    draw.rectangle((180, 186, 1020, 640), fill=FOAM)
+    chance = Random(seed)
+    for _ in range(420):
+        x, y, size = chance.randint(188, 1004), chance.randint(194, 626), chance.randint(3, 9)
+        draw.ellipse((x, y, x + size, y + size), outline=FOAM_DARK, width=2)
+    draw.polygon([(430, 186), (770, 186), (742, 290), (700, 390), (500, 390), (462, 296)], fill=HOLLOW)
+    draw.ellipse((480, 270, 720, 510), fill=STEEL, outline=STEEL_DARK, width=6)
+    draw.ellipse((510, 300, 690, 480), fill=PAPER, outline=STEEL_DARK, width=4)
+    draw.text((556, 370), "drain", fill=INK, font=_font(32))
+    for left in (96, 1020):
+        draw.rectangle((left, 186, left + 84, 640), fill=WOOD, outline=WOOD_DARK, width=4)
+    draw.line((840, 236, 716, 236), fill=MARK, width=6)
+    draw.text((850, 212), "hollow", fill=MARK, font=_font(44))
+    draw.text((380, 680), "face of the studs, room side", fill=INK, font=_font(34))
+    return _finish(image, caption)
+
+
+def substrate(caption: str, seed: int) -> bytes:
+    """A bay before spraying: bare plywood between two rafters, a joint of two sheets, nails in a row."""
+    image, draw = _begin(DECK)
+    chance = Random(seed)
+    for _ in range(90):
+        x, y, long = chance.randint(0, 1180), chance.randint(0, 815), chance.randint(60, 300)
+        draw.arc((x, y, x + long, y + chance.randint(8, 34)), 190, 350, fill="#b8945f", width=2)
+    draw.line((0, 430, 1200, 430), fill=WOOD_DARK, width=7)
+    for y in (404, 456):
+        for x in range(220, 1000, 110):
+            draw.ellipse((x, y - 6, x + 12, y + 6), fill=STEEL_DARK)
+    _rafter(draw, 60, wide=110)
+    _rafter(draw, 1030, wide=110)
+    for top, words in ((60, "plywood deck"), (470, "joint of two sheets")):
+        draw.text((400, top), words, fill=INK, font=_font(40))
     return _finish(image, caption)
 
 

@@ -1,11 +1,11 @@
 """A roof that was thin at its ridge: everything a job can hold, in one."""
 
-from datetime import UTC, datetime
+from datetime import UTC, datetime, timedelta
 
 from sample_jobs import pictures
 from sample_jobs.depths import Foam
 from sample_jobs.layout import CLOSED, STATEMENT, Bays, begin, foam, lay_out, read_all, surface
-from sample_jobs.writer import FOOT, INCH, Writer
+from sample_jobs.writer import FOOT, INCH, Writer, eighths, instant
 
 
 def tamarack_yard() -> Writer:
@@ -85,6 +85,8 @@ def tamarack_yard() -> Writer:
             depth = sprayed.depth_mm(number, 28, across, down) + 2.2 + 1.3 * ((number + row) % 3)
             job.reading(slope_keys[number], row, col, depth, purpose="self-check")
 
+    # A day after spraying and more: the inspector keeps out for the re-entry time of the sheet.
+    job.inspector.at = job.start + timedelta(hours=30)
     job.device = job.inspector
     job.write(
         "visit",
@@ -107,11 +109,17 @@ def tamarack_yard() -> Writer:
         shows="label",
         caption="Lot as delivered",
     )
+    job.photo(
+        pictures.substrate("the deck before spraying, dry and swept", 12),
+        surface=slope,
+        shows="substrate",
+        caption="Plywood deck, a bay left open at the east gable",
+    )
     read = read_all(job, slope_keys, slope_bays, sprayed)
     thin = [number for number in range(28) if read[number, 0, 0][1] < 3.44 * INCH]
     lowest = min(thin, key=lambda number: read[number, 0, 0][1])
     job.photo(
-        pictures.probe("2 7/8 in", 2.875, "probe at the ridge of the thinnest bay", 5),
+        pictures.probe(eighths(read[lowest, 0, 0][1]), "probe at the ridge of the thinnest bay", 5),
         bay=slope_keys[lowest],
         row=0,
         col=0,
@@ -168,7 +176,7 @@ def tamarack_yard() -> Writer:
             scale_step_g=0.01,
             calliper_step_mm=0.1,
             skin="without",
-            foam_age_h=21,
+            foam_age_h=26,
             hole_filled=True,
         )
         if number == 1:
@@ -183,7 +191,7 @@ def tamarack_yard() -> Writer:
         job, knee_keys, knee_bays, Foam(3.62 * INCH, 9, drift_mm=3.0, crown_mm=6.0, hand_mm=7.0), skip=(6, 7, 8, 9)
     )
 
-    _second_round(job, slope, slope_keys, slope_bays, read, thin, deficiency)
+    _second_round(job, slope, a, slope_keys, slope_bays, read, thin, deficiency)
     job.sign("inspector", "Demo inspector A", STATEMENT, [rim], credential="Demo credential 7")
     job.crew.at = job.inspector.at
     job.device = job.crew
@@ -194,6 +202,7 @@ def tamarack_yard() -> Writer:
 def _second_round(
     job: Writer,
     slope: str,
+    foam_key: str,
     keys: list[str],
     bays: Bays,
     read: dict[tuple[int, int, int], tuple[str, float]],
@@ -205,6 +214,25 @@ def _second_round(
     job.device = job.crew
     for number in thin:
         job.write("touch-up", bay=keys[number], round=2, text="ridge, one pass")
+    began = job.device.at
+    job.device.at += timedelta(minutes=50)
+    job.write(
+        "spray",
+        surfaces=[slope],
+        foam=foam_key,
+        started=instant(began),
+        finished=instant(job.device.at),
+        lot_a="A-2604-17",
+        lot_b="B-2604-09",
+        drum_c=23.0,
+        hose_c=52.0,
+        heater_a_c=54.0,
+        heater_b_c=54.0,
+        pressure_a_kpa=8300.0,
+        pressure_b_kpa=8300.0,
+        passes=1,
+        note="touch-up at the ridge",
+    )
     repair = job.write("repair", deficiency=deficiency, text="Foamed the gap from both sides of the pipe.")
     job.photo(
         pictures.gap_at_pipe("the same place, filled", mended=True, seed=8),
@@ -213,16 +241,26 @@ def _second_round(
         shows="after",
         caption="Gap filled",
     )
-    job.inspector.at = job.crew.at.replace(hour=21)
+    job.inspector.at = job.crew.at + timedelta(hours=26)
     job.device = job.inspector
-    lowest = min(thin, key=lambda number: read[number, 0, 0][1])
+    lowest, mended = min(thin, key=lambda number: read[number, 0, 0][1]), thin[0]
     for number in thin[:-1]:
         for row, col, _, _ in bays.places():
             before = read[number, row, col][1]
             added = 0.62 * INCH if row == 0 else 0.04 * INCH
             if row == 0 and number == lowest:
                 added = 0.3 * INCH
-            job.reading(keys[number], row, col, before + added, round=2)
+            again = job.reading(keys[number], row, col, before + added, round=2)
+            if row == 0 and number == mended:
+                job.photo(
+                    pictures.probe(eighths(before + added), "the ridge of a touched-up bay, read again", 6),
+                    bay=keys[number],
+                    row=row,
+                    col=col,
+                    about=again,
+                    shows="after",
+                    caption="Ridge after touch-up, read again",
+                )
     job.write("acceptance", repair=repair, role="inspector", text="Seen, filled.")
     job.photo(
         pictures.slope("the slope after touch-up", thin_at_ridge=False, seed=3),

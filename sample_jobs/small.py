@@ -7,8 +7,6 @@ from sample_jobs.layout import CLOSED, OPEN, Bays, begin, foam, lay_out, read_al
 from sample_jobs.writer import FOOT, INCH, Writer
 
 
-
-
 def workbench_garage() -> Writer:
     """An applicator's self-check and nothing else."""
     job = begin(

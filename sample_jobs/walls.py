@@ -5,9 +5,7 @@ from datetime import UTC, datetime
 from sample_jobs import pictures
 from sample_jobs.depths import Foam
 from sample_jobs.layout import OPEN, Bays, begin, foam, lay_out, surface
-from sample_jobs.writer import FOOT, INCH, Writer
-
-
+from sample_jobs.writer import FOOT, INCH, Writer, eighths
 
 
 def hollow_road() -> Writer:
@@ -33,7 +31,7 @@ def hollow_road() -> Writer:
         "wall",
         b,
         14,
-        spec={"depth_mm": 5.5 * INCH, "basis": "average", "rsi": 3.35, "under_area_share_max": 0.25},
+        spec={"depth_mm": 5.25 * INCH, "basis": "average", "rsi": 3.35, "under_area_share_max": 0.25},
         vapour={"rule": "separate", "retarder": sheet},
         numbered_from="the west corner",
         substrate="7/16 in OSB",
@@ -50,7 +48,8 @@ def hollow_road() -> Writer:
         ],
     )
     keys = lay_out(job, wall, bays)
-    for number in (4, 5, 9):
+    windows = (4, 5, 9)
+    for number in windows:
         size = {"width_mm": bays.width_mm, "height_mm": bays.height_mm, "rows": bays.rows, "cols": bays.cols}
         job.write(
             "bay", key=keys[number], surface=wall, label=str(number + 1), order=number + 1, **size, opening_m2=0.42
@@ -70,14 +69,26 @@ def hollow_road() -> Writer:
                     round=1,
                     purpose="inspection",
                     blocked=reason,
-                    text="drain stack",
+                    text="drain stack" if reason == "pipe-or-box" else "shelving in the way",
                 )
             else:
-                # Trimmed flush: nothing stands proud of the studs, and the gap below their face is what is read.
+                # Trimmed flush: nothing stands proud of the studs. In the bays with windows the gap below their face is read.
                 depth = min(sprayed.depth_mm(number, 14, across, down), face)
-                job.reading(key, row, col, depth, measured="face-gap")
-    job.write(
+                if number in windows:
+                    exact, _ = eighths(depth)
+                    gap = eighths(face - exact)[1]
+                    job.reading(key, row, col, depth, measured="face-gap", entered=gap)
+                else:
+                    job.reading(key, row, col, depth)
+    void = job.write(
         "deficiency", bay=keys[2], sort="void", severity="repair", text="Hollow behind the drain stack, a hand wide."
+    )
+    job.photo(
+        pictures.void_behind_pipe("hollow behind the drain stack", 15),
+        bay=keys[2],
+        about=void,
+        shows="before",
+        caption="Hollow behind the drain stack, bay 3",
     )
     job.write("deficiency", bay=keys[6], sort="overspray", severity="note", text="Overspray on the window buck.")
     job.write(

@@ -22,6 +22,11 @@ def stable_uuid(seed: str, at: datetime) -> str:
     return f"{stamp[:8]}-{stamp[8:]}-7{rest[:3]}-{variant}{rest[4:7]}-{rest[7:19]}"
 
 
+def instant(at: datetime) -> str:
+    """A time as records write it: UTC, milliseconds."""
+    return at.astimezone(UTC).strftime("%Y-%m-%dT%H:%M:%S.") + f"{at.microsecond // 1000:03d}Z"
+
+
 def eighths(depth_mm: float) -> tuple[float, str]:
     """A depth as a person reads it off a probe in eighths of an inch: exact millimetres, and what was typed."""
     steps = max(0, round(depth_mm / INCH * 8))
@@ -85,8 +90,14 @@ class Writer:
         device.n += 1
         device.at += timedelta(seconds=seconds)
         record_id = stable_uuid(f"{self.name} {device.name} {device.n}", device.at)
-        at = device.at.astimezone(UTC).strftime("%Y-%m-%dT%H:%M:%S.") + f"{device.at.microsecond // 1000:03d}Z"
-        envelope = {"id": record_id, "job": self.job, "kind": kind, "at": at, "by": device.by, "device": device.name}
+        envelope = {
+            "id": record_id,
+            "job": self.job,
+            "kind": kind,
+            "at": instant(device.at),
+            "by": device.by,
+            "device": device.name,
+        }
         self.records.append({**envelope, "n": device.n, "body": _exact(body)})
         return record_id
 

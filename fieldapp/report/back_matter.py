@@ -33,8 +33,8 @@ METHOD = (
     "What the sample supports, at 95 %, one-sided: lower bound of the mean by two-stage cluster sampling with finite "
     "population correction and Student's t (Cochran; Abramowitz and Stegun 26.7.3-4); most bays that can still be short by "
     "the hypergeometric distribution, exact. Only where all bays were read or they were picked at random.",
-    "Agreement of self-check and inspection: bias and bias +- 1.96 sd (Bland and Altman 1999).",
-    "U with wood framing: parallel paths, softwood 8.67 m2K/W per metre. U with steel framing: effective cavity R as printed "
+    "Agreement of self-check and inspection: bias and bias ± 1.96 sd (Bland and Altman 1999).",
+    "U with wood framing: parallel paths, softwood 8.67 m²K/W per metre. U with steel framing: effective cavity R as printed "
     "in ANSI/ASHRAE/IES 90.1 table A9.2-2, interpolated, never extrapolated; from memory, to be checked against the adopted "
     "code.",
     "Digest: SHA-256 over the canonical JSON (RFC 8785) of all records but signatures, sorted by id.",

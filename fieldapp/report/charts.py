@@ -150,8 +150,8 @@ def strip_chart(view: SurfaceView) -> StripChart | None:
     step = MM_PER_INCH if view.words.is_ip else 25.0
     while highest / step > 7:
         step *= 2
-    top = step * (int(highest / step) + 1)
-    ticks = tuple((step * n, view.words.depth_number(step * n)) for n in range(int(top / step) + 1))
+    steps = int(highest / step) + 1
+    ticks = tuple((step * n, view.words.depth_number(step * n)) for n in range(steps + 1))
     pairs = view.pairs()
     return StripChart(
         strips=tuple(
@@ -159,7 +159,7 @@ def strip_chart(view: SurfaceView) -> StripChart | None:
             for bay, result in pairs
         ),
         lines=tuple(apart),
-        top_mm=top,
+        top_mm=step * steps,
         ticks=ticks,
     )
 

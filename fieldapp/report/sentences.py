@@ -151,7 +151,8 @@ def passes_text(view: SurfaceView, passes: int | None) -> str:
 def surface_sentence(view: SurfaceView) -> Sentence:
     """One surface in a sentence or two."""
     if view.result.result == "meets":
-        return Sentence(f"{view.name} meets everything asked, by these readings.", result="meets")
+        text = f"{view.name} meets everything asked, by these readings.{_low_spot_beside(view)}"
+        return Sentence(text, result="meets")
     if view.result.result == "unproven":
         return Sentence(f"{view.name} is unproven: {'; '.join(unproven_reasons(view))}.", result="unproven")
     clauses = surface_clauses(view)
@@ -162,6 +163,7 @@ def surface_sentence(view: SurfaceView) -> Sentence:
     most = view.result.sampling.short_bays_at_most
     if most is not None and view.result.bays_read < view.result.bays_total:
         text += f" By this sample up to {most} of {view.result.bays_total} bays can be short."
+    text += _low_spot_beside(view)
     if view.unread():
         text += f" Besides, {view.named(view.unread())} {'was' if len(view.unread()) == 1 else 'were'} not read."
     add = view.to_add()
@@ -169,6 +171,16 @@ def surface_sentence(view: SurfaceView) -> Sentence:
         text += f" About {view.words.foam(add.missing_m3)} more, {passes_text(view, add.passes)},"
         text += " would bring its depth to specification, if read again."
     return Sentence(text, frozenset(bay.key for _, bays in clauses for bay in bays), "short")
+
+
+def _low_spot_beside(view: SurfaceView) -> str:
+    """A low spot that an average does not ask about is told all the same: it lets heat and vapor through."""
+    spots = [bay for bay in view.result.bays if bay.low_spot_mm is not None and view.is_under(bay.low_spot_mm)]
+    if view.counted.spec.single_point_mm or not spots:
+        return ""
+    worst = min(spots, key=lambda bay: bay.low_spot_mm or 0.0)
+    depth = view.words.depth(worst.low_spot_mm or 0.0)
+    return f" The thinnest place found is {depth} (bay {worst.label}); an average does not ask about it."
 
 
 def answer(view: JobView) -> tuple[Sentence, ...]:

@@ -52,7 +52,7 @@ def _style(name: str, size: float, leading: float, font: str = REGULAR, **more: 
 
 
 BODY: Final = _style("body", 9.2, 12.4)
-BULLET: Final = _style("bullet", 9.2, 12.4, leftIndent=11, bulletIndent=1, spaceAfter=2.2)
+BULLET: Final = _style("bullet", 9.2, 12.4, leftIndent=14, bulletIndent=2, spaceAfter=2.2)
 LEAD: Final = _style("lead", 12.2, 16.2, BOLD)
 ALARM: Final = _style("alarm", 10.4, 13.6, BOLD)
 COVER: Final = _style("cover", 10.0, 13.2)
