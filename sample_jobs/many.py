@@ -42,7 +42,7 @@ def larch_hall() -> Writer:
     )
     keys = lay_out(job, floor, bays, [str(label) for label in drawn])
     job.device = job.inspector
-    sprayed = Foam(3.47 * INCH, 44, drift_mm=4.0, crown_mm=6.0, reach_mm=12.0, hand_mm=9.0)
+    sprayed = Foam(3.55 * INCH, 44, drift_mm=12.0, crown_mm=6.0, reach_mm=12.0, hand_mm=9.0)
     read_all(job, keys, bays, sprayed, stands=[label - 1 for label in drawn])
     job.write("visit", asked="a sample of 40 bays drawn at random", not_inspected="the 120 bays that were not drawn")
     return job

@@ -92,6 +92,7 @@ def probe(read: tuple[float, str], caption: str, seed: int, *, metric: bool = Fa
 def slope(caption: str, *, thin_at_ridge: bool, seed: int) -> bytes:
     """Bays of a sloped roof from below: the ridge at the top, thin foam showing as a lower, darker band."""
     image, draw = _begin()
+    _foam(draw, (0, 60, 60, 820), seed + 9)
     for number in range(4):
         left = 60 + number * 280
         _foam(draw, (left + 60, 60, left + 280, 820), seed + number)

@@ -61,6 +61,12 @@ def tamarack_yard() -> Writer:
     sprayed = Foam(4.46 * INCH, 11, drift_mm=-6.0, crown_mm=6.0, reach_mm=54.0, hand_mm=9.0)
     job.device = job.crew
     job.write("conditions", surface=slope, air_c=16.0, rh=0.41, substrate_c=14.0, wood_mc=[0.12, 0.14, 0.13])
+    job.photo(
+        pictures.substrate("the deck before spraying, dry and swept", 12),
+        surface=slope,
+        shows="substrate",
+        caption="Plywood deck before spraying",
+    )
     job.write(
         "spray",
         14400.0,
@@ -108,12 +114,6 @@ def tamarack_yard() -> Writer:
         surface=slope,
         shows="label",
         caption="Lot as delivered",
-    )
-    job.photo(
-        pictures.substrate("the deck before spraying, dry and swept", 12),
-        surface=slope,
-        shows="substrate",
-        caption="Plywood deck, a bay left open at the east gable",
     )
     read = read_all(job, slope_keys, slope_bays, sprayed)
     thin = [number for number in range(28) if read[number, 0, 0][1] < 3.44 * INCH]
