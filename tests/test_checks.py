@@ -1,15 +1,25 @@
 """The checks of a surface in their order: when each is asked, when it meets, and the word that fits it."""
 
+import json
 from dataclasses import replace
 from typing import Any
 
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 
 from fieldapp.reckoning.inputs import Core, CountedBay, Deficiencies, Place, Spec, Vapour
 from fieldapp.reckoning.job import reckon
 from fieldapp.reckoning.results import as_json
 from fieldapp.reckoning.units import MM_PER_INCH
+from fieldapp.reckoning.wording import Wording
+from fieldapp.records.digest import covers
+from fieldapp.records.file import load
+from fieldapp.records.kinds import ZONES
 from tests.counted import CLOSED, OPEN, bay, check, job, reckoned, surface
+from tests.jobs import FOAM, SURFACE, Notebook, taken
+from tests.jobs import reckoned as jobs_reckoned
+from tests.sheets import key
 
 DEPTH_RULE = Vapour("depth", 76.2)
 
@@ -299,15 +309,100 @@ def test_a_job_without_surfaces_is_unproven_and_a_place_is_as_its_surfaces() -> 
     assert found.result == "short"
 
 
+def test_a_bare_point_without_any_film_conducts_all_there_is_and_stops_no_reckoning() -> None:
+    # Nothing resists at the bare half, so by parallel paths nothing is resisted at all.
+    made = surface([bay([0.0, 76.2])], film_in_rsi=0.0, film_out_rsi=0.0, spec=Spec(76.2, "average", rsi=1.0))
+    found = reckoned(made)
+    assert check(found, "delivered-r")[0] != "meets"
+    assert found.rsi.delivered is None or found.rsi.delivered == pytest.approx(0.0, abs=1e-9)
+    # Without a bare point no film is needed: 76.2 mm everywhere deliver what they promise.
+    assert reckoned(replace(made, bays=(even(76.2),))).rsi.delivered == pytest.approx(CLOSED.resistance.rsi(76.2))
+
+
+#: Zones 4C and 5 to 8.
+COLD = {"4C", "5A", "5B", "5C", "6A", "6B", "7", "8"}
+
+
+@pytest.mark.parametrize("zone", ZONES)
+def test_the_cold_zones_are_marine_four_and_five_to_eight(zone: str) -> None:
+    sheet = Vapour("separate", retarder_name="sheet", retarder_perm_ng=20.0, retarder_side="outside")
+    found = reckoned(surface([even(140.0)], foam=OPEN, vapour=sheet), climate_zone=zone)
+    assert check(found, "vapour") == (("short", "against") if zone in COLD else ("meets", "meets"))
+    nothing = Vapour("none", reason="as drawn")
+    found = reckoned(surface([even(140.0)], foam=OPEN, vapour=nothing), climate_zone=zone)
+    assert check(found, "vapour")[0] == ("unproven" if zone in COLD else "meets")
+
+
+@given(st.floats(0.1, 300.0), st.sampled_from([38.0, 50.8, 76.2, 88.9, 101.6]), st.sampled_from(["ip", "si"]))
+def test_no_depth_or_r_that_misses_is_written_equal_to_its_limit(depth_mm: float, limit_mm: float, units: str) -> None:
+    words = Wording(units)
+    rsi = CLOSED.resistance.rsi(limit_mm)
+    spec = Spec(limit_mm, "average-with-floor", limit_mm, rsi=rsi)
+    found = reckoned(surface([even(depth_mm)], spec=spec), units=units)
+    for check_id, start, limit in (
+        ("mean-depth", "mean ", words.depth(limit_mm)),
+        ("lowest-depth", "lowest ", words.depth(limit_mm)),
+        ("delivered-r", "at most ", words.r(rsi)),
+    ):
+        one = found.check(check_id)
+        assert one is not None
+        assert one.result == "short" or depth_mm >= limit_mm - 0.05
+        if one.result == "short":
+            assert not one.found.startswith(f"{start}{limit}")
+
+
+def test_a_job_worked_by_hand_from_its_records_to_its_numbers() -> None:
+    # 40 m2K/W a metre: 75 mm give 3.0, 100 mm give 4.0; films 0.12 + 0.03. A bay of 1 m2 with 75 and 100 mm, one of 2 m2 with
+    # 100 and 100 mm.
+    book = Notebook.begun(bays=2)
+    book.body(FOAM).update(resistance={"rsi_per_m": 40}, permeability_ng_m=2.0, density_kg_m3={"nominal": 32})
+    book.body(SURFACE).update(spec={"depth_mm": 100, "basis": "minimum", "rsi": 3.8, "under_area_share_max": 0.1})
+    for number, area_m2 in enumerate((1.0, 2.0)):
+        book.body(book.bays[number]).update(rows=2, area_m2=area_m2)
+    for number, depths in enumerate(((75.0, 100.0), (100.0, 100.0))):
+        for row, depth_mm in enumerate(depths):
+            book.read(row, depth_mm, bay=book.bays[number])
+    job = jobs_reckoned(book.records)
+    (found,) = job.surfaces
+    first, second = found.bays
+    # Mean (0.5 x 75 + 2.5 x 100)/3; sd of 75, 100, 100, 100 about 93.75: sqrt(468.75/3) = 12.5.
+    assert (found.depth_mm.mean, found.depth_mm.sd) == pytest.approx((287.5 / 3, 12.5))
+    # 0.5/3.15 + 2.5/4.15 = 0.7611398 W/K over 3 m2: 3/0.7611398 - 0.15 = 3.791457; at the mean depth 3.833333.
+    assert (found.rsi.nominal, found.rsi.delivered) == pytest.approx((3.833333, 3.791457), abs=1e-6)
+    assert found.rsi.uneven_loss == pytest.approx(0.041876, abs=1e-6)
+    # The first bay: 1/(0.5/3.15 + 0.5/4.15) - 0.15 = 3.431507.
+    assert (first.delivered_rsi, second.delivered_rsi) == pytest.approx((3.431507, 4.0), abs=1e-6)
+    # 0.5 of 3 m2 lack 25 mm: 0.0125 m3, 5.2972 board feet of 0.002359737 m3, 0.4 kg at 32 kg/m3, one pass of 50.8 mm.
+    assert (found.under_spray.area_share, found.under_spray.missing_m3) == pytest.approx((1 / 6, 0.0125))
+    assert found.under_spray.deep_area_share == 0.0
+    assert (found.touch_up.volume_m3, found.touch_up.board_feet) == pytest.approx((0.0125, 5.2972), abs=1e-4)
+    assert found.touch_up.mass_kg == pytest.approx(0.4)
+    assert found.touch_up.passes == 1
+    # 0.5 x 2/0.075 + 0.5 x 2/0.1 = 23.3333 over 1 m2; 20 over the other 2 m2: 63.3333/3 = 21.1111.
+    assert (first.permeance_ng, found.vapour.permeance_ng) == pytest.approx((23.333333, 21.111111))
+    assert (found.vapour.bays_meets, found.vapour.bays_short, found.vapour.bays_unproven) == (1, 1, 0)
+    # Both of two bays read: (2/3)^2 x 312.5/2 / 4 = 17.3611 = 4.166667^2; t(0.95, 1) = tan(0.45 pi) = 6.313752.
+    assert found.sampling.mean_lower_mm == pytest.approx(287.5 / 3 - 6.313752 * 4.166667, abs=1e-4)
+    assert found.sampling.short_bays_at_most == 1
+    assert [(one.id, one.result) for one in found.checks] == [
+        ("coverage", "meets"),
+        ("lowest-depth", "short"),
+        ("under-spray", "short"),
+        ("delivered-r", "short"),
+        ("vapour", "short"),
+    ]
+    assert (first.result, second.result, found.result, job.result) == ("short", "meets", "short", "short")
+
+
 # --- touch-up: worked by hand ----------------------------------------------------------------------------------------------
 
-FOAM = replace(CLOSED, min_pass_mm=12.7, max_pass_mm=25.4, loss_share=0.2)
+SHEET = replace(CLOSED, min_pass_mm=12.7, max_pass_mm=25.4, loss_share=0.2)
 
 
 def test_touch_up_under_a_minimum() -> None:
     # Asked 100 mm; 95, 90, 100, 40 on 1 m2 each: missing 5 + 10 + 60 = 75 mm m2 = 0.075 m3.
     # To order: 12.7 + 12.7 + 60 = 85.4 -> 0.0854 / 0.8 = 0.10675 m3. Passes: (60 - 0.05) / 25.4 = 2.36 -> 3. Mass: 0.075 x 32.
-    found = reckoned(surface([bay([95.0, 90.0, 100.0, 40.0])], foam=FOAM, spec=Spec(100.0, "minimum"))).touch_up
+    found = reckoned(surface([bay([95.0, 90.0, 100.0, 40.0])], foam=SHEET, spec=Spec(100.0, "minimum"))).touch_up
     assert found.volume_m3 == pytest.approx(0.075)
     assert found.order_m3 == pytest.approx(0.10675)
     assert found.board_feet == pytest.approx(0.075 / 0.002359737216)
@@ -318,17 +413,17 @@ def test_touch_up_under_a_minimum() -> None:
 def test_touch_up_takes_the_larger_of_the_basis_and_the_vapour_depth() -> None:
     # Floor 60, vapour depth 76.2: 70 lacks 6.2; the mean of max(70, 76.2) and 90 is 83.1, over the 80 asked.
     spec = Spec(80.0, "average-with-floor", 60.0)
-    found = reckoned(surface([bay([70.0, 90.0])], foam=FOAM, spec=spec, vapour=DEPTH_RULE)).touch_up
+    found = reckoned(surface([bay([70.0, 90.0])], foam=SHEET, spec=spec, vapour=DEPTH_RULE)).touch_up
     assert found.volume_m3 == pytest.approx(0.0062)
 
 
 def test_touch_up_under_an_average_adds_what_the_mean_still_lacks() -> None:
     # 70 and 80 against a mean of 80 over 2 m2: the mean, 75, lacks 5: 0.010 m3, in one pass.
-    found = reckoned(surface([bay([70.0, 80.0])], foam=FOAM, spec=Spec(80.0, "average"))).touch_up
+    found = reckoned(surface([bay([70.0, 80.0])], foam=SHEET, spec=Spec(80.0, "average"))).touch_up
     assert found.volume_m3 == pytest.approx(0.010)
     assert found.passes == 1
     # With a floor of 78: 70 lacks 8; the mean of 78 and 80 is 79, lacks 1 more over 2 m2: 0.008 + 0.002.
-    found = reckoned(surface([bay([70.0, 80.0])], foam=FOAM, spec=Spec(80.0, "average-with-floor", 78.0))).touch_up
+    found = reckoned(surface([bay([70.0, 80.0])], foam=SHEET, spec=Spec(80.0, "average-with-floor", 78.0))).touch_up
     assert found.volume_m3 == pytest.approx(0.010)
 
 
@@ -339,7 +434,7 @@ def test_nothing_missing_takes_no_pass_and_without_the_sheets_pass_nobody_can_sa
 
 def test_a_touch_up_past_the_greatest_depth_says_so() -> None:
     # To 100 by passes of at least 12.7: 95 becomes 107.7, over 105.
-    made = surface([bay([95.0, 100.0])], foam=FOAM, spec=Spec(100.0, "minimum"), max_depth_mm=105.0)
+    made = surface([bay([95.0, 100.0])], foam=SHEET, spec=Spec(100.0, "minimum"), max_depth_mm=105.0)
     assert reckoned(made).touch_up.exceeds_max_depth
     assert not reckoned(replace(made, max_depth_mm=110.0)).touch_up.exceeds_max_depth
 
@@ -383,7 +478,7 @@ SHAPE: dict[str, Any] = {
     "agreement": 0,
     "places": [{"key": 0, "name": 0, "result": 0}],
 }
-SURFACE: dict[str, Any] = {
+SURFACE_SHAPE: dict[str, Any] = {
     **dict.fromkeys(
         [
             "key",
@@ -450,7 +545,7 @@ def test_the_json_has_every_key_that_is_documented() -> None:
     made = replace(surface([even(90.0)], vapour=DEPTH_RULE), place="p")
     plain = as_json(reckon(job(made, places=(Place("p", "P"),))), [], "0" * 64)
     assert lacking(SHAPE, plain) == []
-    assert lacking(SURFACE, plain["surfaces"][0]) == []
+    assert lacking(SURFACE_SHAPE, plain["surfaces"][0]) == []
     assert plain["format"] == 1
     assert plain["surfaces"][0]["sampling"]["confidence"] == 0.95
 
@@ -474,3 +569,22 @@ def test_a_depth_that_misses_is_never_written_equal_to_its_limit() -> None:
     assert found is not None
     assert found.result == "short"
     assert "just under 4 in" in found.found
+
+
+def test_what_is_printed_of_a_file_has_every_key_that_is_documented_and_nothing_but_json() -> None:
+    book = Notebook.read_through(110.0, bays=2)
+    book.write("place", {"key": key(7), "name": "Unit 7"})
+    book.again(SURFACE, place=key(7))
+    for row, depth_mm in enumerate((108.0, 112.0, 109.0)):
+        book.read(row, depth_mm, purpose="self-check")
+    bad = book.read(0, -3)
+    loaded = load(book.lines())
+    refused = [one.as_json() for one in loaded.refused]
+    plain = as_json(jobs_reckoned(book.records), refused, covers(loaded.job.records))
+    assert lacking(SHAPE, plain) == []
+    assert lacking(SURFACE_SHAPE, plain["surfaces"][0]) == []
+    line = len(book.records)
+    assert refused == [{"line": line, "id": bad, "field": "depth_mm", "found": "-3", "allowed": "0 to 1000"}]
+    assert plain["digest"] == covers(taken(book.records))
+    assert plain["agreement"]["pairs"] == 3
+    assert json.loads(json.dumps(plain, allow_nan=False)) == plain

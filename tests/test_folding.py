@@ -15,7 +15,8 @@ from fieldapp.records.digest import covers
 from fieldapp.records.file import load
 from fieldapp.records.fold import NoJobError, fold
 from fieldapp.records.job import Job
-from fieldapp.records.record import Record, read_record
+from fieldapp.records.record import Record
+from tests.jobs import FOAM, SURFACE, Notebook, reckoned, taken
 from tests.sheets import Sheet, key
 
 
@@ -71,7 +72,7 @@ def stories(draw: st.DrawFn) -> Sheet:
 
 
 def records_of(sheet: Sheet) -> list[Record]:
-    return [record for raw in sheet.records if isinstance(record := read_record(raw), Record)]
+    return taken(sheet.records)
 
 
 def whole(job: Job) -> dict[str, Any]:
@@ -187,3 +188,104 @@ def test_records_that_name_no_job_cannot_be_folded() -> None:
     sheet.write("job", {"key": key(1), "removed": True})
     with pytest.raises(NoJobError, match="removed"):
         fold(records_of(sheet))
+
+
+@st.composite
+def corrections(draw: st.DrawFn) -> Notebook:
+    """Readings, and withdrawals of anything before or after them, by clocks that run together or apart."""
+    book = Notebook.begun()
+    names = [key(9000 + len(book.records) + number) for number in range(1, 9)]
+    for _ in names:
+        if draw(st.booleans()):
+            book.read(0, draw(st.sampled_from([80.0, 90.0, 110.0])))
+        else:
+            book.withdraw(draw(st.sampled_from(names)))
+        # A few instants, so that many records share one and the id decides.
+        book.records[-1]["at"] = f"2026-05-05T10:00:0{draw(st.integers(0, 3))}.000Z"
+    return book
+
+
+@given(corrections())
+def test_a_fact_stands_unless_a_later_withdrawal_that_stands_itself_takes_it_out(book: Notebook) -> None:
+    # The rule as it is said, one fact at a time; it ends because each step is later than the one before.
+    order = {raw["id"]: (raw["at"], raw["id"]) for raw in book.records}
+    withdrawals = [raw for raw in book.records if raw["kind"] == "withdrawal"]
+
+    def stands(fact: str) -> bool:
+        return not any(
+            raw["body"]["record"] == fact and order[raw["id"]] > order[fact] and stands(raw["id"])
+            for raw in withdrawals
+        )
+
+    job = load(book.lines()).job
+    for kind in ("reading", "withdrawal"):
+        expected = {raw["id"] for raw in book.records if raw["kind"] == kind and stands(raw["id"])}
+        assert {record.id for record in job.of(kind)} == expected
+    assert {pair.fact.id for pair in job.withdrawn} == {fact for fact in order if not stands(fact)}
+    assert {record.id for record in job.records} == order.keys()
+
+
+@given(st.permutations(["a", "b", "c"]), st.lists(st.integers(0, 2), min_size=3, max_size=3))
+def test_of_descriptions_the_latest_counts_and_of_two_at_one_instant_the_later_id(
+    labels: list[str], instants: list[int]
+) -> None:
+    book = Notebook.begun()
+    for label, instant in zip(labels, instants, strict=True):
+        book.again(book.bays[0], label=label)
+        book.records[-1]["at"] = f"2026-05-05T10:00:0{instant}.000Z"
+    # Ids rise as they are written, so that the last of the latest instant counts.
+    latest = max(range(3), key=lambda number: (instants[number], number))
+    for lines in (book.lines(), book.lines()[::-1]):
+        (bay,) = load(lines).job.bays[SURFACE]
+        assert (bay.name, len(bay.history)) == (labels[latest], 4)
+
+
+@given(stories(), st.data())
+def test_two_phones_that_wrote_apart_make_the_job_that_one_would_have(sheet: Sheet, data: st.DataObject) -> None:
+    records = records_of(sheet)
+    ours = data.draw(st.lists(st.booleans(), min_size=len(records), max_size=len(records)))
+    first = [record for record, mine in zip(records, ours, strict=True) if mine]
+    second = [record for record, mine in zip(records, ours, strict=True) if not mine]
+    assert fold(first + second) == fold(second + first) == fold(records)
+
+
+def test_a_surface_whose_foam_was_removed_is_unproven_until_it_is_described_again() -> None:
+    book = Notebook.read_through(110.0)
+    described = book.body(FOAM)
+    book.remove(FOAM)
+    assert reckoned(book.records).result == "unproven"
+    assert "foam" in (reckoned(book.records).surfaces[0].unproven_because or "")
+    book.write("foam", described)
+    assert reckoned(book.records).result == "meets"
+
+
+def test_a_removed_place_leaves_its_surfaces_in_the_job() -> None:
+    book = Notebook.read_through(110.0)
+    book.write("place", {"key": key(7), "name": "Unit 7"})
+    book.again(SURFACE, place=key(7))
+    placed = reckoned(book.records)
+    assert [(place.name, place.result) for place in placed.places] == [("Unit 7", "meets")]
+    assert placed.surfaces[0].place == key(7)
+    book.remove(key(7))
+    left = reckoned(book.records)
+    assert (left.places, left.surfaces[0].place, left.result) == ((), None, "meets")
+
+
+def test_a_removed_surface_comes_back_with_its_bays_and_readings() -> None:
+    book = Notebook.read_through(110.0, bays=2)
+    described = book.body(SURFACE)
+    before = reckoned(book.records)
+    book.remove(SURFACE)
+    assert reckoned(book.records).surfaces == ()
+    book.write("surface", described)
+    assert reckoned(book.records) == before
+
+
+def test_a_bay_moved_to_another_surface_takes_its_readings_with_it() -> None:
+    book = Notebook.read_through(110.0, bays=2)
+    book.write("surface", {**book.body(SURFACE), "key": key(4), "name": "South wall"})
+    book.again(book.bays[1], surface=key(4))
+    assert [(found.name, found.points_read) for found in reckoned(book.records).surfaces] == [
+        ("North wall", 3),
+        ("South wall", 3),
+    ]

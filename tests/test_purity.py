@@ -1,6 +1,7 @@
 """Imports point downwards only, and the pure rooms touch no file, clock, network, chance or paper."""
 
 import ast
+import re
 from collections.abc import Iterator
 from pathlib import Path
 
@@ -40,7 +41,11 @@ IMPURE_CALLS = {
     "sleep",
     "urandom",
     "getenv",
+    "__import__",
+    "breakpoint",
 }
+#: Built-in names for the same.
+IMPURE_NAMES = {"open", "print", "input", "exec", "eval", "compile", "__import__", "__builtins__", "breakpoint"}
 
 
 def room_of(path: Path) -> str | None:
@@ -83,6 +88,9 @@ def forbidden(room: str, source: str) -> list[str]:
                 called = node.func.id if isinstance(node.func, ast.Name) else getattr(node.func, "attr", "")
                 if called in IMPURE_CALLS:
                     wrong.append(f"{called}() in line {node.lineno}")
+            # Named is as bad as called: `read = open` is one step from reading.
+            elif isinstance(node, ast.Name) and isinstance(node.ctx, ast.Load) and node.id in IMPURE_NAMES:
+                wrong.append(f"{node.id} in line {node.lineno}")
     return wrong
 
 
@@ -101,6 +109,15 @@ def test_a_module_imports_only_what_its_room_may(room: str, path: Path) -> None:
         ("fieldapp/records", "import random"),
         ("fieldapp/records", "from fieldapp.report.model import Report"),
         ("fieldapp/records", "def f():\n    return open('x')"),
+        ("fieldapp/reckoning", "import logging"),
+        ("fieldapp/reckoning", "from time import time"),
+        ("fieldapp/reckoning", "def f():\n    import random"),
+        ("fieldapp/records", "import io, json"),
+        ("fieldapp/records", "import sqlite3"),
+        ("fieldapp/records", "from pathlib import Path"),
+        ("fieldapp/records", "import flask"),
+        ("fieldapp/records", "read = open"),
+        ("fieldapp/records", "x = __import__('os')"),
         ("fieldapp/report", "from reportlab.pdfgen.canvas import Canvas"),
         ("fieldapp/report", "from fieldapp.report.drawing.pages import draw_report"),
         ("fieldapp/report", "from datetime import datetime\nx = datetime.now()"),
@@ -116,3 +133,44 @@ def test_every_pure_folder_says_what_it_may_not_do() -> None:
     for room in PURE:
         told = ast.get_docstring(ast.parse((ROOT / room / "__init__.py").read_text())) or ""
         assert "may not" in told
+
+
+def test_every_room_has_its_row() -> None:
+    # A new room is a new row in ROOMS; without one, nothing would hold it.
+    folders = {path.parent.relative_to(ROOT).as_posix() for path in (ROOT / "fieldapp").rglob("*.py")}
+    assert folders - {"fieldapp"} == set(ROOMS)
+
+
+#: The phone's rooms: what the modules of a folder may import, as paths that start in static/js.
+PHONE_ROOMS = {"reckoning": ("reckoning/",), "records": ("records/", "reckoning/")}
+SCRIPTS = [path for room in PHONE_ROOMS for path in sorted((ROOT / "static" / "js" / room).glob("*.js"))]
+#: What pure modules never name: the page, storage, network, clock and chance.
+NOT_PURE = (
+    "document",
+    "window",
+    "indexedDB",
+    "localStorage",
+    "fetch(",
+    "Date.now",
+    "new Date()",
+    "Math.random",
+    "innerHTML",
+)
+
+
+@pytest.mark.parametrize("path", SCRIPTS, ids=lambda path: f"{path.parent.name}/{path.name}")
+def test_a_module_of_the_phone_imports_only_what_its_room_may(path: Path) -> None:
+    source = path.read_text()
+    for name in re.findall(r'from "([^"]+)"', source):
+        reached = (path.parent / name).resolve().relative_to(ROOT / "static" / "js").as_posix()
+        assert reached.startswith(PHONE_ROOMS[path.parent.name])
+        assert (path.parent / name).is_file()
+    assert not [word for word in NOT_PURE if word in source]
+
+
+def test_both_languages_have_the_same_rooms_by_the_same_names() -> None:
+    # Python alone has the file reader's lines and the typed shapes; the phone alone its values and canonical JSON.
+    for room, only_python in (("reckoning", {"inputs", "results"}), ("records", {"file", "job"})):
+        here = {path.stem for path in (ROOT / "fieldapp" / room).glob("*.py")} - {"__init__"} - only_python
+        there = {path.stem for path in (ROOT / "static" / "js" / room).glob("*.js")} - {"canonical", "load"}
+        assert here == there

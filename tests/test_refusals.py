@@ -1,6 +1,10 @@
 """What is refused, by line, id, field, found and allowed; one bad record never costs the others."""
 
+import copy
+import itertools
 import json
+import math
+from collections.abc import Iterator
 from typing import Any
 
 import pytest
@@ -8,11 +12,17 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from fieldapp.reckoning.job import reckon
+from fieldapp.reckoning.results import as_json
 from fieldapp.records.counting import count
+from fieldapp.records.fields import Fields, ListOf, Number, Rule, Whole
 from fieldapp.records.file import LONGEST_LINE, Loaded, NothingToReckonError, load
 from fieldapp.records.kinds import KINDS
 from fieldapp.records.record import Record, Refusal, read_record
+from tests.jobs import Notebook
 from tests.sheets import Sheet, key
+
+#: Steps from a body to a field: names, and places in lists.
+Path = tuple[str | int, ...]
 
 
 def with_line(line: bytes, **changes: int) -> Loaded:
@@ -42,7 +52,7 @@ BAD_READINGS: list[tuple[dict[str, Any], str, str, str]] = [
     ({"depth_mm": True}, "depth_mm", "true", "0 to 1000"),
     ({"depth_mm": [90]}, "depth_mm", "[90]", "0 to 1000"),
     ({"depth_mm": "absent"}, "depth_mm", "nothing", "a depth, 0 to 1000, or blocked with its reason; not both"),
-    ({"blocked": "no-access"}, "depth_mm", "90.0", "a depth, 0 to 1000, or blocked with its reason; not both"),
+    ({"blocked": "no-access"}, "depth_mm", "90", "a depth, 0 to 1000, or blocked with its reason; not both"),
     (
         {"depth_mm": "absent", "blocked": "too-lazy"},
         "blocked",
@@ -108,6 +118,27 @@ def test_a_bay_that_cannot_be_is_refused_by_name(change: dict[str, Any], field: 
     loaded, record = changed(a_bay(**change), "bay")
     assert [(refusal.id, refusal.field) for refusal in loaded.refused] == [(record, field)]
     assert len(loaded.job.bays[key(3)]) == 2
+
+
+@pytest.mark.parametrize(
+    ("width_mm", "height_mm", "opening_m2"),
+    # Width times height, in m2, to its last decimal place: 0.8042 x 1.8023 and so on.
+    [(804.2, 1802.3, 1.44940966), (764.5, 1050.7, 0.80326015), (699.9, 3881.3, 2.71652187), (400, 2400, 0.96)],
+)
+def test_an_opening_as_large_as_its_bay_is_refused_whatever_floating_point_makes_of_it(
+    width_mm: float, height_mm: float, opening_m2: float
+) -> None:
+    loaded, record = changed(a_bay(width_mm=width_mm, height_mm=height_mm, opening_m2=opening_m2), "bay")
+    assert [(refusal.id, refusal.field) for refusal in loaded.refused] == [(record, "opening_m2")]
+
+
+def test_a_bay_moved_to_a_surface_that_is_not_there_stays_where_it_was() -> None:
+    book = Notebook.read_through(101.6, bays=2)
+    moved = book.again(book.bays[0], surface=key(999))
+    loaded = load(book.lines())
+    # The bad description is refused; the good one before it, and what was read, are not.
+    assert [(refusal.id, refusal.field) for refusal in loaded.refused] == [(moved, "surface")]
+    assert reckon(count(loaded.job).reckoned).surfaces[0].points_read == 6
 
 
 def a_foam(resistance: Any) -> dict[str, Any]:
@@ -334,16 +365,145 @@ def test_dropping_a_required_field_or_giving_it_a_wrong_type_refuses_by_its_name
     assert wrong.field.split(".")[0] == field
 
 
-@pytest.mark.parametrize(("kind", "field"), [(kind, field) for kind in KINDS for field in KINDS[kind].body.may])
-def test_a_known_field_of_a_wrong_type_is_refused_by_its_name(kind: str, field: str) -> None:
-    values: tuple[Any, ...] = ({"no": "such"}, [[[]]])
-    for value in values:
-        found = read_body(kind, {**GOOD[kind], field: value})
-        if isinstance(found, Refusal):
-            assert found.field.split(".")[0].split("[")[0] == field
+#: Parts that a body may have, with what they must hold; by kind and path.
+PARTS: dict[tuple[str, str], Any] = {
+    ("job", "design"): {},
+    ("foam", "density_kg_m3"): {},
+    ("surface", "vapour.retarder"): {"name": "film", "perm_ng": 5, "side": "inside"},
+    ("surface", "probe"): {},
+    ("surface", "cover"): {},
+    ("surface", "framing"): {"material": "wood"},
+}
+
+
+def paths(rule: Rule, path: Path = ()) -> Iterator[tuple[Path, Rule]]:
+    """Every field of a kind with its rule, parts of parts included; of lists, the first item."""
+    if path:
+        yield path, rule
+    if isinstance(rule, Fields):
+        for name, inner in {**rule.must, **rule.may}.items():
+            yield from paths(inner, (*path, name))
+    elif isinstance(rule, ListOf):
+        yield from paths(rule.item, (*path, 0))
+
+
+def written(path: Path) -> str:
+    """A path as refusals name it: 'layers[0].rsi'."""
+    return "".join(f"[{step}]" if isinstance(step, int) else f".{step}" for step in path).removeprefix(".")
+
+
+def with_value(kind: str, path: Path, value: Any) -> dict[str, Any]:
+    """A good body of a kind with a value put at a path; parts on the way to it are made."""
+    body: dict[str, Any] = copy.deepcopy(GOOD[kind])
+    if kind == "foam" and "table" in path:
+        body["resistance"] = {}
+    at: Any = body
+    for place, (step, after) in enumerate(itertools.pairwise(path), 1):
+        made = [] if isinstance(after, int) else PARTS.get((kind, written(path[:place])), {})
+        if isinstance(step, int):
+            at[:] = at[:1] or [copy.deepcopy(made)]
         else:
-            # An object of optional parts takes an object that names none of them.
-            assert isinstance(value, dict)
+            at.setdefault(step, copy.deepcopy(made))
+        at = at[step]
+    if isinstance(at, list):
+        # Two, since rows of a table and points of a stroke are pairs; the first is refused first.
+        at[:] = [value, 0.5]
+    else:
+        at[path[-1]] = value
+    return body
+
+
+FIELDS = [(kind, path, rule) for kind, known in KINDS.items() for path, rule in paths(known.body)]
+
+
+@pytest.mark.parametrize(("kind", "path", "rule"), FIELDS, ids=[f"{kind} {written(path)}" for kind, path, _ in FIELDS])
+def test_a_known_field_of_a_wrong_type_is_refused_by_its_path(kind: str, path: Path, rule: Rule) -> None:
+    wrong: tuple[Any, ...] = ("", 7, []) if isinstance(rule, Fields) else ({"no": "such"}, [{}])
+    for value in wrong[:1] if isinstance(rule, ListOf) else wrong:
+        found = read_body(kind, with_value(kind, path, value))
+        assert isinstance(found, Refusal)
+        assert found.field == written(path)
+        assert found.allowed
+
+
+@pytest.mark.parametrize("kind", [kind for kind, known in KINDS.items() if known.describes])
+def test_a_thing_is_removed_by_true_and_by_nothing_that_looks_like_it(kind: str) -> None:
+    for value in ("no", "true", 1, [True]):
+        found = read_body(kind, {**GOOD[kind], "removed": value})
+        assert isinstance(found, Refusal)
+        assert found.field == "removed"
+    assert isinstance(read_body(kind, {**GOOD[kind], "removed": False}), Record)
+
+
+def edges(rule: Number | Whole) -> list[float]:
+    """What a number may be at the least and at the most by the rule of its field; and next to nothing, where it may be 0."""
+    if isinstance(rule, Whole):
+        return [rule.low, rule.high]
+    low = -(2.0**53 - 1) if rule.low is None else math.nextafter(rule.low, math.inf) if rule.above else rule.low
+    high = 2.0**53 - 1 if rule.high is None else math.nextafter(rule.high, -math.inf) if rule.below else rule.high
+    return [low, math.nextafter(0.0, 1.0) if low == 0.0 else low, high]
+
+
+EDGES = [
+    (kind, path, value)
+    for kind in ("job", "place", "foam", "surface", "bay", "reading", "low-spot", "core", "conditions")
+    for path, rule in paths(KINDS[kind].body)
+    if isinstance(rule, (Number, Whole))
+    for value in dict.fromkeys(edges(rule))
+]
+#: The things that the notebook below describes, by kind; a record of such a kind takes the place of the one there is.
+THINGS = {"job": key(1), "foam": key(2), "surface": key(3), "bay": key(100)}
+CORE_METHODS = {"width_mm": "prism", "depth_mm": "prism", "volume_ml": "displacement"}
+
+
+@pytest.mark.parametrize(
+    ("kind", "path", "value"), EDGES, ids=[f"{kind} {written(path)} {value:g}" for kind, path, value in EDGES]
+)
+def test_a_number_at_the_edge_of_what_is_allowed_never_stops_the_reckoning(kind: str, path: Path, value: float) -> None:
+    book = Notebook.begun(bays=2)
+    for row, depth in enumerate((80.0, 100.0, 120.0)):
+        book.read(row, depth)
+    book.again(key(2), density_kg_m3={"nominal": 32, "min": 30, "max": 40})
+    steps = {"scale_step_g": 0.1, "calliper_step_mm": 0.1}
+    book.core(3.0, method="cylinder", diameter_mm=50, length_mm=50, **steps)
+    body = with_value(kind, path, value)
+    if kind == "core":
+        sizes = {"diameter_mm": 50, "width_mm": 50, "length_mm": 50, "depth_mm": 50, "volume_ml": 100}
+        body = {**sizes, **steps, **body, "method": CORE_METHODS.get(str(path[0]), "cylinder")}
+    if kind in THINGS:
+        body = {**book.body(THINGS[kind]), **{str(path[0]): body[str(path[0])]}, "key": THINGS[kind]}
+    book.write(kind, body)
+    loaded = load(book.lines())
+    plain = as_json(reckon(count(loaded.job).reckoned), [one.as_json() for one in loaded.refused], "")
+    json.dumps(plain, allow_nan=False)
+
+
+@pytest.mark.parametrize("field", ["id", "job", "kind", "at", "by", "purpose", "bay", "entered", "shutter\ud800"])
+def test_half_a_surrogate_is_refused_in_words_that_can_be_written(field: str) -> None:
+    sheet = Sheet.even(depth_mm=101.6, bays=2)
+    record = {**copy.deepcopy(sheet.records[-1]), "id": key(5000)}
+    (record if field in record else record["body"])[field] = "\ud800"
+    loaded = load([*sheet.lines(), json.dumps(record).encode()])
+    (refusal,) = loaded.refused
+    assert refusal.line == len(sheet.records) + 1
+    assert json.dumps(refusal.as_json(), ensure_ascii=False).encode()
+    assert refusal.sentence().encode()
+
+
+@pytest.mark.parametrize(
+    "number", ["NaN", "Infinity", "-Infinity", "1e999", "-1e999", "1e308", "-0.1", "1" + "0" * 400]
+)
+def test_a_number_that_no_probe_reads_is_refused_as_it_stands_in_the_file(number: str) -> None:
+    line = json.dumps({**Sheet.even(depth_mm=101.6, bays=2).records[-1], "id": key(5000)})
+    loaded = with_line(line.replace("101.6", number).encode())
+    assert [(one.id, one.field, one.allowed) for one in loaded.refused] == [(key(5000), "depth_mm", "0 to 1000")]
+
+
+@pytest.mark.parametrize("number", ["NaN", "-Infinity", "1e999"])
+def test_a_number_without_an_end_is_refused_in_fields_that_nobody_knows_too(number: str) -> None:
+    line = json.dumps({**Sheet.even(depth_mm=101.6, bays=2).records[-1], "id": key(5000)})
+    loaded = with_line(line.replace('"body": {', f'"body": {{"weather": {number}, ').encode())
+    assert [one.id for one in loaded.refused] == [key(5000)]
 
 
 def test_a_removed_thing_needs_only_its_key() -> None:
@@ -382,3 +542,67 @@ def test_a_file_of_anything_is_told_in_one_sentence(lines: list[bytes]) -> None:
     with pytest.raises(NothingToReckonError) as told:
         load(lines)
     assert "\n" not in str(told.value)
+
+
+@pytest.mark.parametrize("kind", ["low-spot", "touch-up", "pull", "deficiency", "conditions"])
+def test_a_field_that_a_kind_does_not_know_is_kept_whatever_it_is_called(kind: str) -> None:
+    # Rows and columns are fields of readings, cores and photos; here they are somebody else's words.
+    for value in ("top", [0], {"from": 1}, 99):
+        loaded, record = changed({**GOOD[kind], "bay": key(100), "row": value, "col": value}, kind)
+        assert loaded.refused == ()
+        assert [one.body["row"] for one in loaded.job.records if one.id == record] == [value]
+
+
+def places_in(value: Any, path: Path = ()) -> Iterator[Path]:
+    """Every place in a JSON value below its root."""
+    inner = value.items() if isinstance(value, dict) else enumerate(value) if isinstance(value, list) else ()
+    for step, item in inner:
+        yield (*path, step)
+        yield from places_in(item, (*path, step))
+
+
+@given(st.data())
+def test_records_changed_anywhere_are_taken_or_refused_and_never_stop_the_reader(data: st.DataObject) -> None:
+    book = Notebook.read_through(101.6, bays=2)
+    for kind in data.draw(st.lists(st.sampled_from(sorted(GOOD)), max_size=4)):
+        book.write(kind, copy.deepcopy(GOOD[kind]))
+    for _ in range(data.draw(st.integers(1, 4))):
+        record: Any = data.draw(st.sampled_from(book.records))
+        path = data.draw(st.sampled_from(list(places_in(record))))
+        at = record
+        for step in path[:-1]:
+            at = at[step]
+        at[path[-1]] = data.draw(JSON)
+    try:
+        loaded = load(book.lines())
+    except NothingToReckonError:
+        return
+    reckon(count(loaded.job).reckoned)
+    # Each line is in the job, or told of; none is lost on the way.
+    kept = [record.id for record in loaded.job.records]
+    refused = {one.line for one in loaded.refused}
+    assert all(record["id"] in kept or line in refused for line, record in enumerate(book.records, 1))
+
+
+@given(st.data())
+def test_a_line_damaged_on_the_way_costs_no_other(data: st.DataObject) -> None:
+    lines = Sheet.even(depth_mm=101.6, bays=2).lines()
+    damaged = bytearray(lines[-1])
+    for at in data.draw(st.lists(st.integers(0, len(damaged) - 1), min_size=1, max_size=3)):
+        damaged[at] = data.draw(st.integers(0, 255))
+    loaded = load([*lines[:-1], bytes(damaged)])
+    assert reckon(count(loaded.job).reckoned).surfaces[0].points_read >= 5
+    assert all(one.line == len(lines) for one in loaded.refused)
+
+
+@pytest.mark.parametrize("text", ["two\nlines", "two\r\nlines", "two\u2028lines", "two\x85lines"])
+def test_what_is_refused_is_told_in_one_line_whatever_was_typed(text: str) -> None:
+    book = Notebook.read_through(101.6)
+    book.again(book.bays[0], label=text)
+    book.read(0, 90.0, purpose=text)
+    book.read(99, 90.0, entered=text)
+    told = [refusal.sentence() for refusal in load(book.lines()).refused]
+    assert len(told) == 2
+    with pytest.raises(NothingToReckonError) as nothing:
+        load([json.dumps({**book.records[0], "id": text}).encode()])
+    assert [len(sentence.splitlines()) for sentence in (*told, str(nothing.value))] == [1, 1, 1]

@@ -6,7 +6,7 @@ holds the two together.
 """
 
 from dataclasses import dataclass
-from math import ceil
+from math import ceil, inf
 
 from fieldapp.reckoning.inputs import CountedBay, Foam, Spec, Vapour
 from fieldapp.reckoning.limits import DEPTH_TOLERANCE_MM, least_meeting_mm
@@ -91,11 +91,11 @@ def bay_figures(bay: CountedBay, foam: Foam | None, series_rsi: float) -> BayFig
         shifted += off
         shifted_squares += off * off
         area_depth += point_area * depth
-        if rsi_per_mm:
-            conductance += point_area / (series_rsi + rsi_per_mm * depth)
-        elif resistance is not None:
-            conductance += point_area / (series_rsi + resistance.rsi(depth))
-        if depth > 0.0:
+        if resistance is not None:
+            rsi = series_rsi + (rsi_per_mm * depth if rsi_per_mm else resistance.rsi(depth))
+            # Without films a bare point conducts without bound, and the bay delivers nothing.
+            conductance += point_area / rsi if rsi > 0.0 else inf
+        if depth > DEPTH_TOLERANCE_MM:
             flow += point_area / depth
         else:
             bare = True

@@ -5,7 +5,7 @@ Everything is in m2K/W (RSI) and W/(m2K); heat is taken to flow straight through
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from math import log1p
+from math import inf, log1p
 from typing import Final
 
 from fieldapp.reckoning.limits import DEPTH_TOLERANCE_MM, depth_meets, depth_over
@@ -77,6 +77,11 @@ def films_rsi(assembly: str, inside_rsi: float | None = None, outside_rsi: float
     return (usual_inside if inside_rsi is None else inside_rsi) + (
         usual_outside if outside_rsi is None else outside_rsi
     )
+
+
+def conductance(area_m2: float, rsi: float) -> float:
+    """Conductance of an area; without bound where nothing resists, as at a bare point without films. [W/K]"""
+    return area_m2 / rsi if rsi > 0.0 else inf
 
 
 def parallel_u(

@@ -1,7 +1,7 @@
 """One surface: its bays, their sums, and what follows from them. The checks themselves are in `checks`."""
 
 from dataclasses import dataclass
-from math import sqrt
+from math import isfinite, sqrt
 
 from fieldapp.reckoning import checks
 from fieldapp.reckoning.bays import (
@@ -16,7 +16,7 @@ from fieldapp.reckoning.bays import (
 from fieldapp.reckoning.cores import density_figures
 from fieldapp.reckoning.inputs import CountedBay, CountedSurface
 from fieldapp.reckoning.limits import at_most, depth_meets, depth_over
-from fieldapp.reckoning.resistance import films_rsi, steel_frame_rsi, wood_frame_u
+from fieldapp.reckoning.resistance import conductance, films_rsi, steel_frame_rsi, wood_frame_u
 from fieldapp.reckoning.results import (
     BayResult,
     DepthFigures,
@@ -211,12 +211,12 @@ def _clear_u(surface: CountedSurface, sums: _Sums, series_rsi: float) -> float:
     """U through the foam alone, between framing, with another resistance in series than the films. [W/(m2K)]"""
     assert surface.foam is not None
     rsi = surface.foam.resistance.rsi
-    conductance = 0.0
+    total = 0.0
     for bay in surface.bays:
         for depth, area in zip(bay.depths_mm, bay.areas_m2, strict=True):
             if depth is not None:
-                conductance += area / (series_rsi + rsi(depth))
-    return conductance / sums.area_m2
+                total += conductance(area, series_rsi + rsi(depth))
+    return total / sums.area_m2
 
 
 def _framed_u(
@@ -233,6 +233,8 @@ def _framed_u(
         effective = steel_frame_rsi(delivered_rsi, framing.depth_mm, framing.spacing_mm)
         return None if effective is None else 1.0 / (series_rsi + effective)
     clear_u = _clear_u(surface, sums, series_rsi)
+    if not isfinite(clear_u):
+        return None
     if framing.material == "none":
         return clear_u
     if framing.share is None or framing.depth_mm is None:

@@ -3,7 +3,7 @@
 from collections.abc import Sequence
 from typing import Final
 
-from fieldapp.reckoning.limits import at_most
+from fieldapp.reckoning.limits import DEPTH_TOLERANCE_MM, at_most
 from fieldapp.reckoning.units import NG_PER_PERM
 
 #: Upper limits of the vapour retarder classes: 0.1, 1 and 10 perm. [ng/(Pa s m2)] Source: International Residential Code
@@ -31,7 +31,7 @@ def permeance_ng(depths_mm: Sequence[float], areas_m2: Sequence[float], permeabi
     flow = 0.0
     area = 0.0
     for depth_mm, area_m2 in zip(depths_mm, areas_m2, strict=True):
-        if depth_mm <= 0.0:
+        if depth_mm <= DEPTH_TOLERANCE_MM:
             return None
         flow += area_m2 / depth_mm
         area += area_m2

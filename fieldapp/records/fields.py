@@ -10,10 +10,14 @@ from dataclasses import dataclass, field
 from datetime import datetime
 from typing import Any, Final, Protocol
 
+import rfc8785
+
 UUID: Final = re.compile(r"[0-9a-f]{8}-[0-9a-f]{4}-[0-9a-f]{4}-[0-9a-f]{4}-[0-9a-f]{12}")
 SHA256: Final = re.compile(r"[0-9a-f]{64}")
 INSTANT: Final = re.compile(r"\d{4}-\d\d-\d\dT\d\d:\d\d:\d\d\.\d{3}Z")
 LONGEST_FOUND: Final = 80
+#: Everything that could end a line, and other characters that no terminal should see.
+_BREAKS: Final = re.compile("[\x00-\x1f\x7f-\x9f\u2028\u2029]+")
 #: Whole numbers beyond this have no exact place in JSON numbers (RFC 8785, RFC 7493).
 LARGEST_WHOLE: Final = 2**53 - 1
 
@@ -35,14 +39,21 @@ class Rule(Protocol):
 
 
 def shown(value: Any) -> str:
-    """A found value as text, cut to a readable length."""
-    text = json.dumps(value, ensure_ascii=False) if not isinstance(value, str) else value
+    """A found value as text of one line, cut to a readable length; as canonical JSON, so that every language shows it alike."""
+    text = value
+    if not isinstance(value, str):
+        try:
+            text = rfc8785.dumps(value).decode()
+        except (rfc8785.CanonicalizationError, UnicodeEncodeError):
+            # NaN, infinities, whole numbers beyond 2^53, half surrogates.
+            text = json.dumps(value, ensure_ascii=False, separators=(",", ":"))
+    text = _BREAKS.sub(" ", text.encode("utf-8", "replace").decode())
     return text if len(text) <= LONGEST_FOUND else f"{text[: LONGEST_FOUND - 1]}…"
 
 
 def plain(number: float) -> str:
-    """A bound as people write it."""
-    return str(int(number)) if number == int(number) else repr(number)
+    """A bound as people write it, and as JSON does."""
+    return rfc8785.dumps(number).decode()
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,7 +118,7 @@ class Text:
         if len(value.strip()) < self.least or len(value) > self.most:
             return Problem(name, shown(value), f"text of {self.least} to {self.most} characters")
         if not value.isascii() and any("\ud800" <= letter <= "\udfff" for letter in value):
-            return Problem(name, shown(value.encode("utf-8", "replace").decode()), "text without lone surrogates")
+            return Problem(name, shown(value), "text without lone surrogates")
         return None
 
 

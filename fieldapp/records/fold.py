@@ -9,6 +9,10 @@ from fieldapp.records.job import Job, Thing, Withdrawn
 from fieldapp.records.record import Record, Refusal
 
 _BAY_FACTS = frozenset({"reading", "low-spot", "touch-up", "core", "pull", "photo", "deficiency", "conditions"})
+#: Of these, the ones that may name a surface instead of a bay.
+_SURFACE_FACTS = frozenset({"photo", "deficiency", "conditions"})
+#: Of these, the ones that name a point by row and column; in others such fields are somebody else's words.
+_POINT_FACTS = frozenset({"reading", "core", "photo"})
 
 
 class NoJobError(ValueError):
@@ -25,30 +29,23 @@ def fold(records: Iterable[Record], clashing: Iterable[str] = ()) -> Job:
         NoJobError: where no record describes the job.
     """
     taken, refused = _one_of_each(records, set(clashing))
+    taken, homeless = _bays_without_surface(taken)
+    refused.extend(homeless)
     things = _described(taken)
     abouts = things["job"]
     if not abouts:
         raise NoJobError("no record of kind 'job' says which job this is")
     job_key = min(abouts, key=lambda key: abouts[key].history[0].order)
-    if abouts[job_key].body.get("removed"):
+    if abouts[job_key].is_removed:
         raise NoJobError("the job was removed")
-    surfaces = {key: thing for key, thing in things["surface"].items() if not thing.body.get("removed")}
+    surfaces = {key: thing for key, thing in things["surface"].items() if not thing.is_removed}
     bays_of: dict[str, list[Thing]] = {key: [] for key in surfaces}
     for bay in things["bay"].values():
-        owner = bay.body.get("surface")
-        if bay.body.get("removed"):
-            continue
-        if owner in bays_of:
-            bays_of[owner].append(bay)
-        elif owner not in things["surface"]:
-            refused.extend(
-                Refusal(record.id, "surface", shown(owner), "the key of a surface of this job")
-                for record in bay.history
-            )
-    known = {bay.key for bay in things["bay"].values() if bay.body.get("surface") in things["surface"]}
-    known |= {bay.key for bay in things["bay"].values() if bay.body.get("removed")}
+        if not bay.is_removed and bay.body["surface"] in bays_of:
+            bays_of[bay.body["surface"]].append(bay)
+    known = set(things["bay"])
     live = {bay.key: bay for bays in bays_of.values() for bay in bays}
-    refused.extend(_misfits(taken, live, known))
+    refused.extend(_misfits(taken, live, known, set(things["surface"])))
     gone = {refusal.id for refusal in refused}
     taken = [record for record in taken if record.id not in gone]
     withdrawn, idle = _withdrawals(taken)
@@ -58,12 +55,12 @@ def fold(records: Iterable[Record], clashing: Iterable[str] = ()) -> Job:
     for record in taken:
         if not record.describes and record.id not in out and not removed_things.intersection(_belongs_to(record)):
             facts[record.kind].append(record)
-    places = _in_order(thing for thing in things["place"].values() if not thing.body.get("removed"))
+    places = _in_order(thing for thing in things["place"].values() if not thing.is_removed)
     return Job(
         key=job_key,
         about=abouts[job_key],
         places=places,
-        foams={key: foam for key, foam in things["foam"].items() if not foam.body.get("removed")},
+        foams={key: foam for key, foam in things["foam"].items() if not foam.is_removed},
         surfaces=_surfaces_in_order(surfaces.values(), places),
         bays={key: _in_order(bays) for key, bays in bays_of.items()},
         facts={kind: tuple(found) for kind, found in facts.items()},
@@ -89,6 +86,22 @@ def _one_of_each(records: Iterable[Record], clashing: set[str]) -> tuple[list[Re
     return sorted((r for r in by_id.values() if r.id not in clashing), key=lambda r: r.order), refused
 
 
+def _bays_without_surface(taken: list[Record]) -> tuple[list[Record], list[Refusal]]:
+    """Descriptions of bays of a surface that was never described are refused; an earlier, good one still stands."""
+    surfaces = {record.body["key"] for record in taken if record.kind == "surface"}
+    homeless = {
+        record.id
+        for record in taken
+        if record.kind == "bay" and record.body.get("removed") is not True and record.body["surface"] not in surfaces
+    }
+    refused = [
+        Refusal(record.id, "surface", shown(record.body["surface"]), "the key of a surface of this job")
+        for record in taken
+        if record.id in homeless
+    ]
+    return [record for record in taken if record.id not in homeless], refused
+
+
 def _described(taken: list[Record]) -> dict[str, dict[str, Thing]]:
     """Things by kind and key, each with its history; the latest description of a key describes it."""
     histories: dict[str, dict[str, list[Record]]] = {k: {} for k in ("job", "place", "foam", "surface", "bay")}
@@ -101,14 +114,18 @@ def _described(taken: list[Record]) -> dict[str, dict[str, Thing]]:
     }
 
 
-def _misfits(taken: list[Record], live: Mapping[str, Thing], known: set[str]) -> list[Refusal]:
-    """Facts about bays that are not there, and points outside a bay's grid."""
+def _misfits(taken: list[Record], live: Mapping[str, Thing], known: set[str], surfaces: set[str]) -> list[Refusal]:
+    """Facts about bays and surfaces that are not there, and points outside a bay's grid."""
     refused: list[Refusal] = []
     for record in taken:
+        owner = record.body.get("surface") if record.kind in _SURFACE_FACTS else None
+        if owner is not None and owner not in surfaces:
+            refused.append(Refusal(record.id, "surface", shown(owner), "the key of a surface of this job"))
+            continue
         if record.kind in _BAY_FACTS and (key := record.body.get("bay")) is not None:
             if key not in known:
                 refused.append(Refusal(record.id, "bay", shown(key), "the key of a bay of this job"))
-            elif key in live and (misfit := _outside(record, live[key])):
+            elif key in live and record.kind in _POINT_FACTS and (misfit := _outside(record, live[key])):
                 refused.append(misfit)
         elif record.kind == "covered":
             unknown = [key for key in record.body["bays"] if key not in known]
@@ -118,10 +135,10 @@ def _misfits(taken: list[Record], live: Mapping[str, Thing], known: set[str]) ->
 
 
 def _outside(record: Record, bay: Thing) -> Refusal | None:
-    for name, count in (("row", bay.body["rows"]), ("col", bay.body["cols"])):
+    for name, count in (("row", int(bay.body["rows"])), ("col", int(bay.body["cols"]))):
         value = record.body.get(name)
         if value is not None and value >= count:
-            return Refusal(record.id, name, shown(value), f"0 to {count - 1} in bay {bay.name}")
+            return Refusal(record.id, name, shown(value), f"0 to {count - 1} in bay {shown(bay.name)}")
     return None
 
 
@@ -148,7 +165,7 @@ def _withdrawals(taken: list[Record]) -> tuple[tuple[Withdrawn, ...], tuple[Reco
 
 def _removed(things: Mapping[str, Mapping[str, Thing]], known: set[str], live: Mapping[str, Thing]) -> set[str]:
     """Keys of bays and surfaces that were taken out of the job, whose facts leave the reckoning with them."""
-    surfaces = {key for key, thing in things["surface"].items() if thing.body.get("removed")}
+    surfaces = {key for key, thing in things["surface"].items() if thing.is_removed}
     return surfaces | (known - live.keys())
 
 

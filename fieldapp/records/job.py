@@ -16,6 +16,11 @@ class Thing:
     history: tuple[Record, ...]
 
     @property
+    def is_removed(self) -> bool:
+        """True where its latest description takes it out of the job."""
+        return self.body.get("removed") is True
+
+    @property
     def name(self) -> str:
         """Its name, or a bay's label."""
         return str(self.body.get("name") or self.body.get("label") or "")

@@ -7,6 +7,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any, Final
 
+from fieldapp.reckoning.limits import at_least
 from fieldapp.records.fields import (
     SHA256,
     UUID,
@@ -34,8 +35,10 @@ KEY: Final = Pattern(UUID, "a UUID in lower case")
 DIGEST: Final = Pattern(SHA256, "a SHA-256 in 64 lower-case hex digits")
 NAME: Final = Text(1, 200)
 DEPTH: Final = Number(0.0, DEEPEST_MM)
-LENGTH: Final = Number(0.0, 100_000.0, above=True)
-POSITIVE: Final = Number(0.0, above=True)
+#: What stands for 'over 0': a millionth of any unit here is nothing, and less than that divides to infinity.
+LEAST: Final = 1e-6
+LENGTH: Final = Number(LEAST, 100_000.0)
+POSITIVE: Final = Number(LEAST, 1e9)
 SHARE: Final = Number(0.0, 1.0)
 ASSEMBLIES: Final = ("wall", "sloped-roof", "attic-floor", "rim", "floor", "foundation")
 ZONES: Final = ("1A", "1B", "2A", "2B", "3A", "3B", "3C", "4A", "4B", "4C", "5A", "5B", "5C", "6A", "6B", "7", "8")
@@ -140,8 +143,9 @@ def bay_area_m2(body: Mapping[str, Any]) -> float:
 
 def _bay(body: Mapping[str, Any]) -> Problem | None:
     opening = body.get("opening_m2") or 0.0
-    if not bay_area_m2(body) > 0.0:
-        return Problem("opening_m2", shown(opening), f"under the bay's area, {plain(bay_area_m2(body) + opening)}")
+    gross = bay_area_m2({**body, "opening_m2": None})
+    if at_least(opening, gross):
+        return Problem("opening_m2", shown(opening), f"under the bay's area, {plain(gross)}")
     if body["rows"] * body["cols"] > 10_000:
         return Problem("rows", shown(body["rows"]), "at most 10000 points in a bay")
     for name, count, length in (("rows_at_mm", "rows", "height_mm"), ("cols_at_mm", "cols", "width_mm")):
@@ -250,7 +254,7 @@ KINDS: Final[Mapping[str, Kind]] = {
                 "foam": KEY,
                 "bays_total": Whole(0, 1_000_000),
                 "spec": Fields(
-                    {"depth_mm": Number(0.0, DEEPEST_MM, above=True)},
+                    {"depth_mm": Number(LEAST, DEEPEST_MM)},
                     {
                         "basis": OneOf(("minimum", "average-with-floor", "average")),
                         "floor_mm": DEPTH,
@@ -265,7 +269,7 @@ KINDS: Final[Mapping[str, Kind]] = {
                 "vapour": Fields(
                     {"rule": OneOf(("depth", "permeance", "separate", "none"))},
                     {
-                        "depth_mm": Number(0.0, DEEPEST_MM, above=True),
+                        "depth_mm": Number(LEAST, DEEPEST_MM),
                         "measure": OneOf(("lowest", "bay-mean")),
                         "by_sample": Flag(),
                         "perm_ng": Number(0.0),
@@ -462,6 +466,8 @@ def check_body(kind: str, body: Any) -> Problem | None:
     known = KINDS.get(kind)
     if known is None:
         return None
-    if known.describes and body.get("removed") is True:
-        return REMOVED.check(body, "")
+    if known.describes and body.get("removed") is not None:
+        if body["removed"] is True:
+            return REMOVED.check(body, "")
+        return Flag().check(body["removed"], "removed") or known.body.check(body, "")
     return known.body.check(body, "")

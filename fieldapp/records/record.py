@@ -93,7 +93,7 @@ def read_record(value: Any) -> Record | Refusal:
         return Refusal(shown(record_id), problem.field, problem.found, problem.allowed)
     try:
         canonical = rfc8785.dumps(value)
-    except (rfc8785.CanonicalizationError, RecursionError) as error:
+    except (rfc8785.CanonicalizationError, UnicodeEncodeError, RecursionError) as error:
         return Refusal(record_id, "record", shown(str(error)), "values that have a canonical JSON form (RFC 8785)")
     return Record(
         id=value["id"],
