@@ -250,6 +250,17 @@ def test_the_crew_sheet_is_one_page_and_names_every_bay_that_lacks_foam(name: st
         assert "Nothing to add" in texts[0]
 
 
+def test_what_was_covered_what_somebody_objects_to_and_what_was_withdrawn_is_in_the_report() -> None:
+    sheet = Sheet.even(depth_mm=101.6, bays=3)
+    sheet.write("covered", {"bays": sheet.bays[:2], "text": "drywall hung"})
+    sheet.write("objection", {"about": sheet.bays[2], "text": "read through a cable hole"})
+    low = sheet.reading(0, 0, 20.0)
+    sheet.write("withdrawal", {"record": low, "reason": "probe caught a nail"})
+    text = " ".join(pages_of(report_pdf(sheet.view())))
+    for told in ("1 and 2 covered 4 May 2026", "drywall hung", "read through a cable hole", "probe caught a nail"):
+        assert told in text.replace("\u00a0", " ")
+
+
 def test_inches_and_millimetres_are_shown_each_in_the_jobs_own_units() -> None:
     in_inches = " ".join(pages_of(report_pdf(Sheet.even(depth_mm=101.6, bays=2, units="ip").view())))
     in_mm = " ".join(pages_of(report_pdf(Sheet.even(depth_mm=101.6, bays=2, units="si").view(), "a4")))

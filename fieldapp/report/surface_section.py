@@ -4,12 +4,12 @@ from collections.abc import Callable
 
 from fieldapp.reckoning.inputs import CountedBay
 from fieldapp.reckoning.vapour import vapour_class
-from fieldapp.reckoning.wording import count
+from fieldapp.reckoning.wording import bay_list, count
 from fieldapp.records.record import Record
 from fieldapp.records.repairs import DeficiencyHistory, deficiency_histories
 from fieldapp.report.charts import depth_chart, strip_chart
 from fieldapp.report.model import Part, Photo, Section, Sentence, Table
-from fieldapp.report.sentences import is_short_low_spot, of_read, surface_sentence
+from fieldapp.report.sentences import capital, is_short_low_spot, of_read, surface_sentence
 from fieldapp.report.terms import ASSEMBLIES, BASES, BROKE, CHOSEN, SORTS, WHERE, check_name, ends
 from fieldapp.report.view import JobView, SurfaceView
 
@@ -34,6 +34,7 @@ def surface_section(job: JobView, view: SurfaceView) -> Section:
         _objections,
         _low_spots,
         _conditions,
+        _covered,
         _photos,
     )
     parts = (part for make in makers if (part := make(job, view)) is not None)
@@ -397,6 +398,19 @@ def _conditions_text(job: JobView, record: Record) -> str:
     if body.get("note"):
         said.append(str(body["note"]))
     return f"{job.date(record.at)}, {job.clock(record.at)}: {'; '.join(said) or 'nothing noted'}"
+
+
+def _covered(job: JobView, view: SurfaceView) -> Part | None:
+    """Bays that were hidden, from when on."""
+    labels = {bay.key: bay.label for bay in view.result.bays}
+    told = []
+    for record in job.job.of("covered"):
+        hidden = [labels[key] for key in record.body["bays"] if key in labels]
+        if hidden:
+            bays = bay_list(hidden, list(labels.values()))
+            text = f"{bays} covered {job.date(record.at)}, {record.by}. {record.body.get('text') or ''}"
+            told.append(Sentence(capital(text.rstrip())))
+    return Part("Covered", tuple(told), bulleted=True) if told else None
 
 
 def _photos(job: JobView, view: SurfaceView) -> Part | None:
