@@ -23,7 +23,8 @@ from fieldapp.reckoning.units import (
     NG_PER_PERM,
     RSI_PER_R,
 )
-from fieldapp.records.counting import counted_bay_areas_m2, plumb_factor
+from fieldapp.records.counting import plumb_factor
+from fieldapp.records.described import described_areas_m2
 from fieldapp.records.job import Thing
 
 INCH = 25.4
@@ -189,7 +190,7 @@ def test_points_that_are_not_equally_spaced_carry_unequal_areas() -> None:
         "cols": 1,
         "rows_at_mm": [at * INCH for at in (6, 30, 48, 90)],
     }
-    areas = counted_bay_areas_m2(body)
+    areas = described_areas_m2(body)
     assert [area / (14.5 * INCH * INCH * 1e-6) for area in areas] == pytest.approx([18.0, 21.0, 30.0, 23.5])
     found = reckoned(wall(bay([3.0, 3.0, 1.0, 3.0], areas)))
     assert inches(found.depth_mm.mean) == pytest.approx(2.3514, abs=5e-5)
@@ -210,8 +211,8 @@ def test_points_on_the_edges_of_a_bay_weigh_less() -> None:
 def test_an_opening_has_no_foam_and_no_area() -> None:
     # 1 m x 2 m less an opening of 0.5 m2: 1.5 m2 over 4 points.
     body = {"width_mm": 1000.0, "height_mm": 2000.0, "rows": 2, "cols": 2, "opening_m2": 0.5}
-    assert counted_bay_areas_m2(body) == pytest.approx([0.375] * 4)
-    assert counted_bay_areas_m2({**body, "area_m2": 1.7}) == pytest.approx([0.3] * 4)
+    assert described_areas_m2(body) == pytest.approx([0.375] * 4)
+    assert described_areas_m2({**body, "area_m2": 1.7}) == pytest.approx([0.3] * 4)
 
 
 def test_a_wedge_between_studs_is_no_mean_of_its_ends() -> None:

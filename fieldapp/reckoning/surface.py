@@ -4,6 +4,7 @@ from dataclasses import dataclass
 from math import isfinite, sqrt
 
 from fieldapp.reckoning import checks
+from fieldapp.reckoning.bay_results import bay_result, depth_or_vapour_short
 from fieldapp.reckoning.bays import (
     NO_TOUCH_UP,
     BayFigures,
@@ -14,14 +15,13 @@ from fieldapp.reckoning.bays import (
     touch_up,
 )
 from fieldapp.reckoning.cores import density_figures
-from fieldapp.reckoning.inputs import CountedBay, CountedSurface
-from fieldapp.reckoning.limits import at_most, depth_meets, depth_over
+from fieldapp.reckoning.inputs import CountedSurface
+from fieldapp.reckoning.limits import depth_meets
 from fieldapp.reckoning.resistance import conductance, films_rsi, steel_frame_rsi, wood_frame_u
 from fieldapp.reckoning.results import (
     BayResult,
     DepthFigures,
     ResistanceFigures,
-    Result,
     Sampling,
     SurfaceResult,
     TouchUp,
@@ -54,7 +54,7 @@ def reckon_surface(surface: CountedSurface, climate_zone: str | None, wording: W
     sums = _sums(figures)
     max_depth_mm = greatest_depth_mm(surface)
     bays = tuple(
-        _bay_result(surface, bay, found, lack, series_rsi, max_depth_mm, because is None)
+        bay_result(surface, bay, found, lack, series_rsi, max_depth_mm, because is None)
         for bay, found, lack in zip(surface.bays, figures, lacks, strict=True)
     )
     bays_total = max(surface.bays_total_stated, len(bays))
@@ -295,17 +295,13 @@ def _sampling(
     ]
     # Where no bay could be judged, none is known not to be short: nothing can be said of the others.
     judged = any({bay.lowest_depth, bay.vapour} & {"short", "meets"} for _, _, bay in read)
-    short_read = sum(_depth_or_vapour_short(result) for _, _, result in read)
-    known_short = sum(_depth_or_vapour_short(result) for result in bays)
+    short_read = sum(depth_or_vapour_short(result) for _, _, result in read)
+    known_short = sum(depth_or_vapour_short(result) for result in bays)
     return Sampling(
         CONFIDENCE,
         mean_lower_bound_mm(sample, bays_total),
         max(known_short, short_bays_at_most(bays_total, len(read), short_read)) if judged else None,
     )
-
-
-def _depth_or_vapour_short(bay: BayResult) -> bool:
-    return "short" in (bay.lowest_depth, bay.vapour)
 
 
 def _vapour_figures(surface: CountedSurface, sums: _Sums, bays: tuple[BayResult, ...]) -> VapourFigures:
@@ -325,96 +321,3 @@ def _vapour_figures(surface: CountedSurface, sums: _Sums, bays: tuple[BayResult,
         permeance_ng=permeance,
         retarder_class=None if permeance is None else vapour_class(permeance),
     )
-
-
-def _bay_result(
-    surface: CountedSurface,
-    bay: CountedBay,
-    found: BayFigures,
-    lack: Shortfall,
-    series_rsi: float,
-    max_depth_mm: float | None,
-    provable: bool,
-) -> BayResult:
-    foam = surface.foam
-    lowest_depth = _bay_lowest_depth(surface, found) if provable else "unproven"
-    vapour = _bay_vapour(surface, found, provable)
-    too_deep = max_depth_mm is not None and found.high_mm is not None and depth_over(found.high_mm, max_depth_mm)
-    result: Result = "meets" if found.is_read else "unproven"
-    if not provable or "unproven" in (lowest_depth, vapour):
-        result = "unproven"
-    if provable and (too_deep or "short" in (lowest_depth, vapour)):
-        result = "short"
-    repair = NO_TOUCH_UP
-    if found.points_read:
-        repair = touch_up(lack.touch_up_m3, lack.order_m3, lack.deepest_mm, lack.highest_after_mm, foam, max_depth_mm)
-    return BayResult(
-        key=bay.key,
-        label=bay.label,
-        result=result,
-        round=bay.round,
-        points=found.points,
-        points_read=found.points_read,
-        points_blocked=len(bay.blocked),
-        mean_mm=found.mean_mm,
-        min_mm=found.lowest_mm,
-        max_mm=found.high_mm,
-        delivered_rsi=found.delivered_rsi(series_rsi) if foam else None,
-        permeance_ng=found.permeance_ng(foam) if foam else None,
-        under_area_share=lack.under_m2 / found.area_m2 if found.points_read else None,
-        missing_m3=lack.missing_m3 if found.points_read else None,
-        vapour=vapour,
-        touch_up_passes=repair.passes,
-        is_read=found.is_read,
-        waiting_for_reading=bay.waiting,
-        points_disagreeing=bay.disagreeing,
-        low_spot_mm=min(bay.low_spots_mm, default=None),
-        lowest_depth=lowest_depth,
-        touch_up=repair,
-    )
-
-
-def _bay_lowest_depth(surface: CountedSurface, found: BayFigures) -> Result | None:
-    """None where the basis asks nothing of a single point; unproven where no basis is stated."""
-    spec = surface.spec
-    if spec.basis == "average":
-        return None
-    if spec.basis is None:
-        return "unproven"
-    if found.lowest_mm is not None and not depth_meets(found.lowest_mm, spec.single_point_mm):
-        return "short"
-    return "meets" if found.is_read else "unproven"
-
-
-def _bay_vapour(surface: CountedSurface, found: BayFigures, provable: bool) -> Result | None:
-    """None under rules that ask nothing of a bay."""
-    vapour, foam = surface.vapour, surface.foam
-    if vapour.rule not in ("depth", "permeance"):
-        return None
-    if not provable or foam is None or found.lowest_mm is None:
-        return "unproven"
-    if vapour.rule == "permeance":
-        return _bay_permeance(found, foam.permeability_ng_m, found.permeance_ng(foam), vapour.perm_ng or 0.0)
-    if not foam.is_closed:
-        return "short"
-    depth_mm = found.lowest_mm
-    if vapour.measure == "bay-mean":
-        if not found.is_read or found.mean_mm is None:
-            return "unproven"
-        depth_mm = found.mean_mm
-    if not depth_meets(depth_mm, vapour.depth_mm or 0.0):
-        return "short"
-    return "meets" if found.is_read else "unproven"
-
-
-def _bay_permeance(
-    found: BayFigures, permeability_ng_m: float | None, permeance_ng: float | None, limit_ng: float
-) -> Result:
-    if permeability_ng_m is None or not found.points_read:
-        return "unproven"
-    if permeance_ng is None:
-        return "short"
-    if not found.is_read:
-        # A mean over part of a bay can still fall on either side.
-        return "unproven"
-    return "meets" if at_most(permeance_ng, limit_ng) else "short"

@@ -4,7 +4,7 @@ from fieldapp.reckoning.wording import count, listed
 from fieldapp.records.digest import about_surfaces, covers
 from fieldapp.records.record import Record
 from fieldapp.report.model import Part, Section, Sentence, Table
-from fieldapp.report.surface_section import photo_of
+from fieldapp.report.noted import photo_of
 from fieldapp.report.terms import BLOCKED, ROLES
 from fieldapp.report.view import JobView
 

@@ -11,7 +11,8 @@ from fieldapp.records.file import Loaded
 from fieldapp.report.back_matter import appendix_section, cautions_section, method_section, other_photos
 from fieldapp.report.charts import touch_up_chart
 from fieldapp.report.model import CrewSheet, Report, Section, SurfaceLine, Table
-from fieldapp.report.sentences import alarms, answer, covering, to_do
+from fieldapp.report.sentences import alarms, answer, covering
+from fieldapp.report.steps import to_do
 from fieldapp.report.surface_section import surface_section, touch_up_table
 from fieldapp.report.terms import BASES
 from fieldapp.report.view import JobView, SurfaceView

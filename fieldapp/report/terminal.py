@@ -4,7 +4,8 @@ from collections.abc import Iterator
 from textwrap import fill
 from typing import Final
 
-from fieldapp.report.sentences import alarms, answer, to_do
+from fieldapp.report.sentences import alarms, answer
+from fieldapp.report.steps import to_do
 from fieldapp.report.terms import check_name
 from fieldapp.report.view import JobView, SurfaceView
 

@@ -21,10 +21,11 @@ from reportlab.platypus import (
     Spacer,
 )
 
-from fieldapp.report.drawing.charts import DepthChartFlow, StripChartFlow
+from fieldapp.report.drawing.depth_charts import DepthChartFlow
 from fieldapp.report.drawing.fonts import BOLD, REGULAR, register
 from fieldapp.report.drawing.marks import draw_mark
 from fieldapp.report.drawing.photos import COLUMNS, PhotoFolder, PhotoRow
+from fieldapp.report.drawing.strip_charts import StripChartFlow
 from fieldapp.report.drawing.style import (
     ACCENT,
     ALARM,

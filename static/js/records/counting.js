@@ -1,9 +1,14 @@
 /** Which reading counts: from a folded job to the job that is reckoned; see fieldapp/records/counting.py. */
 
-import { cylinderM3, prismM3 } from "../reckoning/density.js";
 import { depthOver } from "../reckoning/limits.js";
-import { PerMetre, Table } from "../reckoning/resistance.js";
-import { pointAreasM2, stripShares } from "../reckoning/strips.js";
+import {
+  describedAreasM2,
+  describedCore,
+  describedFoam,
+  describedFraming,
+  describedSpec,
+  describedVapour,
+} from "./described.js";
 import { bayAreaM2 } from "./kinds.js";
 import { deficiencyHistories } from "./repairs.js";
 
@@ -182,19 +187,19 @@ function countedSurface(job, surface, counts, cores, noted, places) {
     key: surface.key,
     name: surface.name,
     assembly: body.assembly,
-    foam: foam === undefined ? null : countedFoam(foam),
+    foam: foam === undefined ? null : describedFoam(foam),
     baysTotalStated: body.bays_total,
-    spec: countedSpec(body.spec),
-    vapour: countedVapour(body.vapour),
+    spec: describedSpec(body.spec),
+    vapour: describedVapour(body.vapour),
     bays: bays.map((bay) => countedBay(bay, counts.get(bay.key))),
     place: places.has(body.place) ? body.place : null,
     chosen: body.chosen ?? null,
-    cores: bays.flatMap((bay) => (cores.get(bay.key) ?? []).map((record) => countedCore(record, bay))),
+    cores: bays.flatMap((bay) => (cores.get(bay.key) ?? []).map((record) => describedCore(record, bay))),
     deficiencies: noted.get(surface.key) ?? { open: 0, repaired: 0, accepted: 0 },
     maxDepthMm: body.max_depth_mm ?? null,
     filmInRsi: body.film_in_rsi ?? null,
     filmOutRsi: body.film_out_rsi ?? null,
-    framing: body.framing == null ? null : countedFraming(body.framing),
+    framing: body.framing == null ? null : describedFraming(body.framing),
     layers: (body.layers ?? []).map((layer) => ({ rsi: layer.rsi ?? null, isFoam: layer.foam === true })),
   };
 }
@@ -214,101 +219,12 @@ function countedBay(bay, found) {
     cols,
     areaM2: bayAreaM2(bay.body),
     depthsMm: Array.from({ length: rows * cols }, (_, place) => found.depthMm(place)),
-    areasM2: pointAreasM2(
-      bayAreaM2(bay.body),
-      stripShares(bay.body.rows_at_mm, rows, bay.body.height_mm),
-      stripShares(bay.body.cols_at_mm, cols, bay.body.width_mm),
-    ),
+    areasM2: describedAreasM2(bay.body),
     blocked,
     lowSpotsMm: found.countingLowSpots().map((record) => record.body.depth_mm * found.factor),
     round: found.lastRound,
     waiting: found.waiting,
     disagreeing: places.filter((place) => found.disagreeing(place)).length,
     readAgain: places.filter((place) => found.readAgain(place)).length,
-  };
-}
-
-/** A foam's values from its description. */
-export function countedFoam(foam) {
-  const { body } = foam;
-  const density = body.density_kg_m3 ?? {};
-  const { table } = body.resistance;
-  return {
-    key: foam.key,
-    name: foam.name,
-    cell: body.cell,
-    resistance: table != null ? new Table(table) : new PerMetre(body.resistance.rsi_per_m),
-    permeabilityNgM: body.permeability_ng_m ?? null,
-    densityNominalKgM3: density.nominal ?? null,
-    densityMinKgM3: density.min ?? null,
-    densityMaxKgM3: density.max ?? null,
-    maxPassMm: body.max_pass_mm ?? null,
-    minPassMm: body.min_pass_mm ?? null,
-    passWaitMin: body.pass_wait_min ?? null,
-    maxDepthMm: body.max_depth_mm ?? null,
-    reentryH: body.reentry_h ?? null,
-    lossShare: body.loss_share ?? null,
-    source: body.source ?? null,
-  };
-}
-
-const countedSpec = (body) => ({
-  depthMm: body.depth_mm,
-  basis: body.basis ?? null,
-  floorMm: body.floor_mm ?? null,
-  rsi: body.rsi ?? null,
-  rBasis: body.r_basis || "delivered",
-  underAreaShareMax: body.under_area_share_max ?? null,
-  baysShareMin: body.bays_share_min ?? 1.0,
-  coresMin: body.cores_min ?? 0,
-});
-
-const countedVapour = (body) => ({
-  rule: body.rule,
-  depthMm: body.depth_mm ?? null,
-  measure: body.measure || "lowest",
-  bySample: body.by_sample === true,
-  permNg: body.perm_ng ?? null,
-  retarderName: body.retarder?.name ?? null,
-  retarderPermNg: body.retarder?.perm_ng ?? null,
-  retarderSide: body.retarder?.side ?? null,
-  reason: body.reason ?? null,
-  acceptedBy: body.accepted_by ?? null,
-});
-
-const countedFraming = (body) => ({
-  material: body.material,
-  spacingMm: body.spacing_mm ?? null,
-  depthMm: body.depth_mm ?? null,
-  share: body.share ?? null,
-});
-
-function countedCore(record, bay) {
-  const { body } = record;
-  let sizesMm = [];
-  let volumeM3;
-  if (body.method === "cylinder") {
-    volumeM3 = cylinderM3(body.diameter_mm, body.length_mm);
-    sizesMm = [
-      [body.diameter_mm, 2],
-      [body.length_mm, 1],
-    ];
-  } else if (body.method === "prism") {
-    volumeM3 = prismM3(body.width_mm, body.length_mm, body.depth_mm);
-    sizesMm = [body.width_mm, body.length_mm, body.depth_mm].map((size) => [size, 1]);
-  } else {
-    volumeM3 = body.volume_ml * 1e-6;
-  }
-  return {
-    record: record.id,
-    bay: bay.key,
-    bayLabel: bay.name,
-    label: body.label || "",
-    massG: body.mass_g,
-    volumeM3,
-    sizesMm,
-    scaleStepG: body.scale_step_g ?? null,
-    calliperStepMm: body.calliper_step_mm ?? null,
-    withSkin: body.skin === "with",
   };
 }
