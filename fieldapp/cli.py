@@ -10,7 +10,8 @@ import json
 import os
 import sys
 import tempfile
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
+from contextlib import contextmanager
 from pathlib import Path
 from typing import NoReturn
 
@@ -40,7 +41,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
     try:
         status: int = options.run(options)
         sys.stdout.flush()
-    except NothingToReckonError as error:
+    except (NothingToReckonError, _ToldError) as error:
         print(f"bayreckon: {error}", file=sys.stderr)
         return NOTHING
     except BrokenPipeError:
@@ -68,6 +69,37 @@ def _parser() -> argparse.ArgumentParser:
     report.add_argument("--paper", choices=("letter", "a4"), help="default: letter for jobs in inches, else a4")
     report.add_argument("--crew", action="store_true", help="the crew sheet instead: touch-up by bay, one page")
     report.set_defaults(run=_report)
+    demo = commands.add_parser("demo", help="a demonstration on the sample jobs; nothing else to set up")
+    demo.add_argument("--folder", type=Path, help="a new folder for it; default: a temporary one")
+    demo.set_defaults(run=_demo)
+    serve = commands.add_parser("serve", help="serve a store to phones and desks")
+    serve.add_argument("--data", type=Path, required=True, metavar="DIR", help="the store; made where it is missing")
+    serve.add_argument(
+        "--proxy", metavar="ADDRESS", help="address of the TLS proxy in front, whose headers are believed"
+    )
+    serve.set_defaults(run=_serve)
+    for server in (demo, serve):
+        server.add_argument(
+            "--bind", default="127.0.0.1", metavar="ADDRESS", help="address to listen on; default: %(default)s"
+        )
+        server.add_argument("--port", type=int, default=8765, help="default: %(default)s; 0 for any that is free")
+    taken = commands.add_parser("import", help="take a job file, with its photos, into a store")
+    taken.add_argument("job", type=Path, metavar="JOB.jsonl")
+    taken.set_defaults(run=_import)
+    given = commands.add_parser("export", help="write a job of a store as a job file, its photos beside it")
+    given.add_argument("key", metavar="KEY", help="the job's id")
+    given.add_argument("-o", "--output", type=Path, required=True, metavar="JOB.jsonl")
+    given.set_defaults(run=_export)
+    for storing in (taken, given):
+        storing.add_argument("--data", type=Path, required=True, metavar="DIR", help="the store")
+    backup = commands.add_parser("backup", help="copy a store, which may be in use, and verify the copy")
+    backup.add_argument("--data", type=Path, required=True, metavar="DIR", help="the store")
+    backup.add_argument("to", type=Path, metavar="NEW_FOLDER")
+    backup.set_defaults(run=_backup)
+    restore = commands.add_parser("restore", help="make a store of a backup, after verifying it")
+    restore.add_argument("backup", type=Path, metavar="BACKUP")
+    restore.add_argument("--data", type=Path, required=True, metavar="NEW_FOLDER")
+    restore.set_defaults(run=_restore)
     return parser
 
 
@@ -131,6 +163,93 @@ def _report(options: argparse.Namespace) -> int:
     _write(path, content.getbuffer())
     print(path)
     return _tell_refused(view)
+
+
+class _ToldError(Exception):
+    """Anything that ends a command with one sentence."""
+
+
+@contextmanager
+def _one_sentence() -> Iterator[None]:
+    """What the store and the server say of themselves, as the command's one line."""
+    from fieldapp.demo import DemoError  # noqa: PLC0415
+    from fieldapp.serve import CannotServeError  # noqa: PLC0415
+    from fieldapp.store.backup import BackupError  # noqa: PLC0415
+    from fieldapp.store.migrations import NewerStoreError  # noqa: PLC0415
+
+    try:
+        yield
+    except (DemoError, CannotServeError, BackupError, NewerStoreError, OSError) as error:
+        raise _ToldError(str(error)) from error
+
+
+def _demo(options: argparse.Namespace) -> int:
+    with _one_sentence():
+        from fieldapp.demo import demo  # noqa: PLC0415
+
+        demo(options.bind, options.port, options.folder)
+    return DONE
+
+
+def _serve(options: argparse.Namespace) -> int:
+    with _one_sentence():
+        from fieldapp.serve import serve  # noqa: PLC0415
+
+        serve(options.data, options.bind, options.port, proxy=options.proxy)
+    return DONE
+
+
+def _import(options: argparse.Namespace) -> int:
+    with _one_sentence():
+        from fieldapp.store.jobfile import import_job  # noqa: PLC0415
+        from fieldapp.store.store import Store  # noqa: PLC0415
+
+        with Store(options.data) as store:
+            done = import_job(store, options.job)
+    print(f"job {done.job}: {done.accepted} records taken, {done.already_there} were there already")
+    print(f"photos: {done.photos_stored} taken, {done.photos_already_there} were there already")
+    for refusal in done.refused[:MOST_TOLD]:
+        print(f"bayreckon: refused: {refusal.sentence()}", file=sys.stderr)
+    for digest in done.photos_missing:
+        print(f"bayreckon: the photo {digest} does not lie beside the job file", file=sys.stderr)
+    for digest, error in done.photos_refused:
+        print(f"bayreckon: the photo {digest} is refused: {error}", file=sys.stderr)
+    return SOME_REFUSED if done.refused or done.photos_refused else DONE
+
+
+def _export(options: argparse.Namespace) -> int:
+    with _one_sentence():
+        from fieldapp.store.jobfile import export_job  # noqa: PLC0415
+        from fieldapp.store.store import Store  # noqa: PLC0415
+
+        with Store(options.data) as store:
+            try:
+                done = export_job(store, options.key, options.output)
+            except KeyError as error:
+                raise _ToldError(f"there is no job {options.key} in {options.data}") from error
+    missing = f", {len(done.photos_missing)} never received" if done.photos_missing else ""
+    print(f"{options.output}: {done.records} records, {done.photos} photos{missing}")
+    return DONE
+
+
+def _backup(options: argparse.Namespace) -> int:
+    with _one_sentence():
+        from fieldapp.store.backup import backup  # noqa: PLC0415
+
+        done = backup(options.data, options.to)
+    print(f"{options.to}: {done.records} records, {done.photos} photos, verified")
+    for digest in done.photos_damaged:
+        print(f"bayreckon: the photo {digest} is damaged in the store and not in the backup", file=sys.stderr)
+    return SOME_REFUSED if done.photos_damaged else DONE
+
+
+def _restore(options: argparse.Namespace) -> int:
+    with _one_sentence():
+        from fieldapp.store.backup import restore  # noqa: PLC0415
+
+        done = restore(options.backup, options.data)
+    print(f"{options.data}: {done.records} records, {done.photos} photos")
+    return DONE
 
 
 def _write(path: Path, content: memoryview) -> None:
