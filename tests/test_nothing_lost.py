@@ -135,8 +135,11 @@ class Sender(threading.Thread):
     def __init__(self, port: int, number: int) -> None:
         super().__init__()
         self.phone = Phone(port)
+        self.name_there, self.signed_in = f"inspector-{number}", False
         self.device = f"d-{number}"
-        self.records = [{**record(number * 10_000 + n), "device": self.device, "n": n} for n in range(1, 601)]
+        self.records = [
+            {**record(number * 10_000 + n), "by": self.name_there, "device": self.device, "n": n} for n in range(1, 601)
+        ]
         self.photos = [picture(20 + number, 20 + n, "PNG") for n in range(12)]
         self.receipt = 0
         self.refused: list[Any] = []
@@ -147,8 +150,9 @@ class Sender(threading.Thread):
         photos = list(self.photos)
         while waiting or photos:
             try:
-                if not self.phone.csrf:
-                    self.phone.sign_in("inspector-1")
+                if not self.signed_in:
+                    self.phone.sign_in(self.name_there)
+                    self.signed_in = True
                 if waiting:
                     status, reply = self.phone.send(waiting[:10], self.device)
                     if status != 200 or any(outcome["state"] == "refused" for outcome in reply["outcomes"]):
@@ -170,9 +174,10 @@ class Sender(threading.Thread):
 def test_phones_that_send_again_lose_nothing_to_a_server_that_is_killed_forty_times(
     nursery: Nursery, unused_port: int
 ) -> None:
-    with opened(nursery.folder) as store:
-        person(store, "inspector-1")
     senders = [Sender(unused_port, number) for number in (1, 2, 3)]
+    with opened(nursery.folder) as store:
+        for sender in senders:
+            person(store, sender.name_there)
     for sender in senders:
         sender.start()
     chance = random.Random(SEED)

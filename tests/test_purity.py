@@ -10,9 +10,20 @@ import pytest
 from tests.sheets import ROOT
 
 MATHEMATICS = {"collections", "dataclasses", "decimal", "functools", "itertools", "math", "typing"}
-SYSTEM = set(
-    ["contextlib", "hmac", "io", "os", "pathlib", "secrets", "shutil", "tempfile", "threading", "time", "types", "zlib"]
-)
+SYSTEM = {
+    "contextlib",
+    "hmac",
+    "io",
+    "os",
+    "pathlib",
+    "secrets",
+    "shutil",
+    "tempfile",
+    "threading",
+    "time",
+    "types",
+    "zlib",
+}
 TEXT = {"json", "re", "hashlib", "datetime", "unicodedata", "textwrap", "xml"}
 
 #: For each room what it may import: rooms of this project, and modules from outside. The longest name that fits rules.
