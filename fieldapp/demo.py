@@ -2,6 +2,7 @@
 
 import io
 import secrets
+import socket
 import sys
 import tempfile
 from collections.abc import Callable
@@ -64,9 +65,9 @@ def demo(
     with listening(bind, port) as listener:
         if folder is None:
             with tempfile.TemporaryDirectory(prefix="bayreckon-demo-") as scratch:
-                _serve(Path(scratch), address_of(listener), lambda app: run(app, listener), make_app or project_app)
+                _serve(Path(scratch), listener, make_app or project_app)
         else:
-            _serve(folder, address_of(listener), lambda app: run(app, listener), make_app or project_app)
+            _serve(folder, listener, make_app or project_app)
 
 
 def furnish(store: Store, reports: Path) -> Demo:
@@ -101,16 +102,16 @@ def told(made: Demo, folder: Path, address: str) -> list[str]:
     return lines
 
 
-def _serve(
-    folder: Path, address: str, go: Callable[[WSGIApplication], None], make_app: Callable[[Store], WSGIApplication]
-) -> None:
+def _serve(folder: Path, listener: socket.socket, make_app: Callable[[Store], WSGIApplication]) -> None:
     if folder.exists() and (not folder.is_dir() or any(folder.iterdir())):
         raise DemoError(f"{folder} is not empty; a demonstration is made in a new or empty folder")
     with Store(folder / "data") as store:
-        made = furnish(store, folder / "reports")
-        app = make_app(store)
-        print("\n".join(told(made, folder, address)))
-        if is_reachable(address):
-            segno.make(address, error="m").terminal(out=sys.stdout, compact=True)
-        sys.stdout.flush()
-        go(app)
+        made, address = furnish(store, folder / "reports"), address_of(listener)
+
+        def ready() -> None:
+            print("\n".join(told(made, folder, address)))
+            if is_reachable(address):
+                segno.make(address, error="m").terminal(out=sys.stdout, compact=True)
+            sys.stdout.flush()
+
+        run(make_app(store), listener, ready)

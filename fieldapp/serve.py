@@ -57,15 +57,23 @@ def serve(
     with Store(folder) as store, listening(bind, port) as listener:
         app = (make_app or project_app)(store)
         address = address_of(listener)
-        print(f"Bayreckon serves {store.folder} at {address} (stop with Ctrl-C)", flush=True)
-        token = store.accounts.first_account_token()
-        if token is not None:
-            print(f"Make the first account, once, at {address}{FIRST_ACCOUNT}{token}", flush=True)
-        run(app, listener, proxy=proxy)
+
+        def ready() -> None:
+            print(f"Bayreckon serves {store.folder} at {address} (stop with Ctrl-C)", flush=True)
+            token = store.accounts.first_account_token()
+            if token is not None:
+                print(f"Make the first account, once, at {address}{FIRST_ACCOUNT}{token}", flush=True)
+
+        run(app, listener, ready, proxy=proxy)
 
 
-def run(app: WSGIApplication, listener: socket.socket, *, proxy: str | None = None) -> None:
-    """Answer requests until SIGTERM or SIGINT; then take no more, answer those in flight, and return."""
+def run(
+    app: WSGIApplication, listener: socket.socket, ready: Callable[[], None] | None = None, *, proxy: str | None = None
+) -> None:
+    """Answer requests until SIGTERM or SIGINT; then take no more, answer those in flight, and return.
+
+    `ready` is called when both are so: a server that says where it is can also be told to stop.
+    """
     logging.getLogger("waitress.queue").setLevel(logging.ERROR)  # a queue is no fault: fifty phones make one
     connections: dict[int, Any] = {}
     believed = {"trusted_proxy": proxy, "trusted_proxy_headers": "x-forwarded-for x-forwarded-proto x-forwarded-host"}
@@ -82,6 +90,8 @@ def run(app: WSGIApplication, listener: socket.socket, *, proxy: str | None = No
         **(believed if proxy else {}),
     )
     with _told_to_stop(server.pull_trigger) as stop:
+        if ready is not None:
+            ready()
         while not stop.is_set():
             wasyncore.loop(timeout=1.0, use_poll=True, map=connections, count=1)
         # The listening socket goes first, so that a client is refused rather than left hanging.

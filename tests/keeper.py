@@ -155,7 +155,19 @@ def round_of(folder: Path, order: dict[str, Any]) -> int:
     if "lives_s" in order:
         time.sleep(order["lives_s"])
         os.kill(child, order.get("signal", signal.SIGKILL))
-    return os.waitstatus_to_exitcode(os.waitpid(child, 0)[1])
+    return _end_of(child)
+
+
+def _end_of(child: int) -> int:
+    """How a child ended; one that never came to the place where it was to die is ended by another signal."""
+    until = time.monotonic() + 15.0
+    while True:
+        found, status = os.waitpid(child, os.WNOHANG)
+        if found:
+            return os.waitstatus_to_exitcode(status)
+        if time.monotonic() > until:
+            os.kill(child, signal.SIGABRT)
+        time.sleep(0.001)
 
 
 def main() -> None:

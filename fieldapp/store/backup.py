@@ -89,14 +89,13 @@ def verify(backed_up: Path) -> BackedUp:
         told = BackedUp(**{**told, "photos_damaged": tuple(told["photos_damaged"])})
     except (OSError, ValueError, KeyError, TypeError) as error:
         raise BackupError(f"{backed_up} is no backup: its {MANIFEST} cannot be read") from error
-    photos = 0
-    for path in sorted((backed_up / "photos").iterdir()):
-        with path.open("rb") as content:
-            if file_digest(content, "sha256").hexdigest() != path.stem:
-                raise BackupError(f"the photo {path.name} in {backed_up} is not what its name says")
-        photos += 1
-    _check_database(backed_up / DATABASE)
-    found = replace(_count(backed_up / DATABASE, photos), made_at=told.made_at, photos_damaged=told.photos_damaged)
+    photos = _check_photos(backed_up / "photos")
+    try:
+        _check_database(backed_up / DATABASE)
+        found = _count(backed_up / DATABASE, photos)
+    except sqlite3.DatabaseError as error:
+        raise BackupError(f"{backed_up / DATABASE} is not whole: {error}") from error
+    found = replace(found, made_at=told.made_at, photos_damaged=told.photos_damaged)
     if found != told:
         raise BackupError(f"{backed_up} holds {found}, but {told} was written")
     return told
@@ -168,15 +167,22 @@ def _count(database: Path, photos: int) -> BackedUp:
     return BackedUp(moment(time.time()), records, waiting, last, photos)
 
 
+def _check_photos(folder: Path) -> int:
+    photos = 0
+    for path in sorted(folder.iterdir()):
+        with path.open("rb") as content:
+            if file_digest(content, "sha256").hexdigest() != path.stem:
+                raise BackupError(f"the photo {path} is not what its name says")
+        photos += 1
+    return photos
+
+
 def _check_database(database: Path) -> None:
     with closing(_reader(database)) as connection:
-        try:
-            problems: list[tuple[Any, ...]] = connection.execute("PRAGMA integrity_check").fetchall()
-            problems += connection.execute("PRAGMA foreign_key_check").fetchall()
-            rows = connection.execute("SELECT id, sha, raw FROM records UNION ALL SELECT id, sha, raw FROM waiting")
-            altered = [record_id for record_id, sha, raw in rows if sha256(raw.encode()).hexdigest() != sha]
-        except sqlite3.DatabaseError as error:
-            raise BackupError(f"{database} is not whole: {error}") from error
+        problems: list[tuple[Any, ...]] = connection.execute("PRAGMA integrity_check").fetchall()
+        problems += connection.execute("PRAGMA foreign_key_check").fetchall()
+        rows = connection.execute("SELECT id, sha, raw FROM records UNION ALL SELECT id, sha, raw FROM waiting")
+        altered = [record_id for record_id, sha, raw in rows if sha256(raw.encode()).hexdigest() != sha]
     if problems != [("ok",)]:
         raise BackupError(f"{database} is not whole: {problems[0]}")
     if altered:
