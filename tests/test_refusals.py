@@ -293,6 +293,21 @@ def test_a_line_that_is_no_record_is_refused_and_costs_no_other(line: bytes) -> 
     assert reckon(count(loaded.job).reckoned).result == "meets"
 
 
+@pytest.mark.parametrize("depth", [50, 300, 450, 600, 900, 2000])
+@pytest.mark.parametrize("where", ["alone", "in a known field", "in an unknown field"])
+def test_values_nested_however_deeply_never_stop_the_reader(depth: int, where: str) -> None:
+    nested = "[" * depth + "]" * depth
+    line = nested
+    if where != "alone":
+        record = {**Sheet.even(depth_mm=101.6, bays=2).records[-1], "id": key(5000)}
+        record["body"] = {**record["body"], "purpose" if where == "in a known field" else "weather": "HERE"}
+        line = json.dumps(record).replace('"HERE"', nested)
+    loaded = with_line(line.encode())
+    assert reckon(count(loaded.job).reckoned).result == "meets"
+    # In a field that nobody knows it is kept, as long as it can be read at all.
+    assert len(loaded.refused) == 1 or where == "in an unknown field"
+
+
 def test_a_byte_order_mark_carriage_returns_and_blank_lines_are_no_trouble() -> None:
     lines = Sheet.even(depth_mm=101.6, bays=2).lines()
     loaded = load([b"\xef\xbb\xbf" + lines[0] + b"\r\n", b"\r\n", *(line + b"\r\n" for line in lines[1:])])

@@ -44,6 +44,8 @@ def shown(value: Any) -> str:
     if not isinstance(value, str):
         try:
             text = rfc8785.dumps(value).decode()
+        except RecursionError:
+            text = "values nested too deeply"
         except (rfc8785.CanonicalizationError, UnicodeEncodeError):
             # NaN, infinities, whole numbers beyond 2^53, half surrogates.
             text = json.dumps(value, ensure_ascii=False, separators=(",", ":"))

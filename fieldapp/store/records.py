@@ -3,7 +3,7 @@
 import json
 import time
 from collections.abc import Iterable, Iterator, Sequence
-from dataclasses import asdict, dataclass
+from dataclasses import dataclass
 from typing import Any, Final, Literal, NamedTuple
 
 from fieldapp.records.file import LONGEST_LINE
@@ -30,8 +30,15 @@ class Outcome:
     allowed: str = ""
 
     def as_json(self) -> dict[str, Any]:
-        """As the batch call answers."""
-        return asdict(self)
+        """As the batch call answers. Written out: `asdict` copies deeply, a seventh of the time of a batch."""
+        return {
+            "id": self.id,
+            "state": self.state,
+            "seq": self.seq,
+            "field": self.field,
+            "found": self.found,
+            "allowed": self.allowed,
+        }
 
 
 class Pulled(NamedTuple):

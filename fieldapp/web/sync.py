@@ -1,7 +1,6 @@
 """What phones call, under /api: JSON in and out, refusals too; never a redirect to a page. See DEVELOPERS.md, 'Sync'."""
 
 import time
-from dataclasses import asdict
 from typing import Any, Final, cast
 
 from flask import Blueprint, Response, jsonify, request
@@ -125,7 +124,9 @@ def batch() -> Response:
     if not isinstance(records, list) or len(records) > MOST_RECORDS:
         raise Told(400, "records", f"A batch holds a list of at most {MOST_RECORDS} records.")
     outcomes = store().records.accept(records, sender.account, sign_in=sender.id, counted=True)
-    return jsonify({"outcomes": [asdict(outcome) for outcome in outcomes], "receipt": store().records.receipt(device)})
+    return jsonify(
+        {"outcomes": [outcome.as_json() for outcome in outcomes], "receipt": store().records.receipt(device)}
+    )
 
 
 @sync.get("/changes")
